@@ -14,6 +14,7 @@
 
 #include <cstdint>
 #include <memory>
+#include <optional>
 #include <string>
 #include <utility>
 #include <variant>
@@ -81,6 +82,7 @@ struct Operation {
 struct Hold {
   Quantity quantity;
   Source source = Source::declared;
+  std::string said;     // the phrase, printed
   Span phrase;          // where the phrase stands
   std::string subject;  // what it is said of
   bool contract = false;  // on a parameter, a return or a field: seen from outside

@@ -176,7 +176,7 @@ class Body {
   }
 
   const Scheme* scheme(const Call& call) const {
-    const std::string& key = altered_ && !alteration_->callee.empty() ? altered_->callee : call.callee;
+    const std::string& key = altered_ && !altered_->callee.empty() ? altered_->callee : call.callee;
     auto found = setting_.schemes.find(key);
     return found == setting_.schemes.end() ? nullptr : &found->second;
   }

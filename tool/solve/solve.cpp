@@ -175,7 +175,7 @@ class Program {
       return std::tuple(facts_.files.name(c.span.file), c.span.begin, c.span.end, int(c.kind), c.expression, c.left, c.right);
     };
     auto& clashes = solution_.clashes;
-    std::stable_sort(clashes.begin(), clashes.end(), [&](const Clash& a, const Clash& b) { return key(a) < key(b); });
+    std::sort(clashes.begin(), clashes.end(), [&](const Clash& a, const Clash& b) { return key(a) < key(b); });
     auto same = [&](const Clash& a, const Clash& b) { return a.span == b.span && a.kind == b.kind; };
     clashes.erase(std::unique(clashes.begin(), clashes.end(), same), clashes.end());
   }

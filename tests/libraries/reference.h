@@ -105,6 +105,14 @@ inline Square of_quaternion(const std::array<double, 4>& q) {
   return r;
 }
 
+using Quaternion = std::array<double, 4>;  // x y z w, ij = k
+inline Quaternion multiplied(const Quaternion& p, const Quaternion& q) {
+  const Triple a{p[0], p[1], p[2]}, b{q[0], q[1], q[2]};
+  const Triple v = scaled(p[3], b) + scaled(q[3], a) + cross(a, b);
+  return {v[0], v[1], v[2], p[3] * q[3] - dot(a, b)};
+}
+inline Quaternion conjugate(const Quaternion& q) { return {-q[0], -q[1], -q[2], q[3]}; }
+
 // ---- random operands
 
 struct Random {
@@ -184,20 +192,6 @@ struct Claim {
 };
 using Call = std::function<Thing(const Things&)>;
 
-inline Things operands(const Claim& c, const Things& arguments) {
-  Things o;
-  for (int k : c.of) {
-    Thing t = arguments.at(k);
-    for (int turned : c.turned)
-      if (turned == k) {
-        t.linear = transposed(t.linear);
-        if (t.kind == Kind::vector || t.kind == Kind::row) t.kind = t.kind == Kind::vector ? Kind::row : Kind::vector;
-      }
-    o.push_back(t);
-  }
-  return o;
-}
-
 inline Thing product(const Thing& a, const Thing& b, bool free) {
   const bool moves = a.kind == Kind::pose && !free;
   if (is_map(a) && b.kind == Kind::vector)
@@ -217,6 +211,21 @@ inline Thing product(const Thing& a, const Thing& b, bool free) {
 inline Thing inverse(const Thing& a) {
   const Square m = inverted(a.linear);
   return a.kind == Kind::pose ? pose(m, scaled(-1, mapped(m, a.vector))) : matrix(m);
+}
+
+inline Things operands(const Claim& c, const Things& arguments) {
+  Things o;
+  for (int k : c.of) {
+    Thing t = arguments.at(k);
+    for (int turned : c.turned)
+      if (turned == k) {
+        if (t.kind == Kind::pose) t = inverse(t);
+        else t.linear = transposed(t.linear);
+        if (t.kind == Kind::vector || t.kind == Kind::row) t.kind = t.kind == Kind::vector ? Kind::row : Kind::vector;
+      }
+    o.push_back(t);
+  }
+  return o;
 }
 
 inline Thing transpose(const Thing& a) {
@@ -276,13 +285,12 @@ inline bool copied(const Thing& from, const Thing& to, double tolerance) {
 }
 
 // The thing with its components in other axes: rows turned by g, columns by h.
-inline Thing reframed(const Thing& t, const Square& g, const Square& h) {
+inline Thing reframed(const Thing& t, const Thing& g, const Thing& h) {
   Thing r = t;
-  r.vector = mapped(g, t.vector);
-  if (is_map(t)) {
-    r.linear = multiplied(multiplied(g, t.linear), transposed(h));
-    r.xyzw = {};
-  }
+  r.vector = mapped(g.linear, t.vector);
+  if (!is_map(t)) return r;
+  r.linear = multiplied(multiplied(g.linear, t.linear), transposed(h.linear));
+  r.xyzw = multiplied(multiplied(g.xyzw, t.xyzw), conjugate(h.xyzw));
   return r;
 }
 
@@ -311,20 +319,13 @@ inline Things arguments(const Claim& c, Random& random) {
 
 inline bool alike_under_frames(const Claim& c, const Call& call, Random& random) {
   Things a = arguments(c, random), b = a;
-  const Square g = sample("matrix", random).linear, h = sample("matrix", random).linear;
-  for (int k : c.of) {
-    b[k] = reframed(a[k], g, is_map(a[k]) ? h : kIdentity);
-    if (is_map(b[k])) {
-      // The quaternion of the reframed map, from the trace and the differences.
-      const Square& m = b[k].linear;
-      const double w = std::sqrt(std::max(0.0, 1 + m[0][0] + m[1][1] + m[2][2])) / 2;
-      b[k].xyzw = {(m[2][1] - m[1][2]) / (4 * w), (m[0][2] - m[2][0]) / (4 * w), (m[1][0] - m[0][1]) / (4 * w), w};
-    }
-  }
+  const Thing g = sample("matrix", random), h = sample("matrix", random);
+  for (int k : c.of) b[k] = reframed(a[k], g, h);
   const Thing x = call(a), y = call(b);
   if (c.is != "dot") return distance(reframed(x, g, h), y) <= 1e3 * c.tolerance;
+  if (x.numbers.empty()) return false;
   for (std::size_t i = 0; i < x.numbers.size(); ++i)
-    if (std::abs(std::abs(x.numbers[i]) - std::abs(y.numbers[i])) > 1e3 * c.tolerance) return false;
+    if (std::abs(x.numbers[i] - y.numbers.at(i)) > 1e3 * c.tolerance) return false;
   return true;
 }
 
@@ -428,6 +429,21 @@ inline bool reads_element(const Claim& c, const Call& call, Random& random) {
   return true;
 }
 
+// A setter of one component: of {1} into 0.
+inline bool writes_element(const Claim& c, const Call& call, Random& random) {
+  const Things a = arguments(c, random);
+  Thing expected = a.at(0);
+  const double written = a.at(1).numbers.at(0);
+  if (is_map(expected)) {
+    expected.xyzw.at(c.index) = written;
+    expected.linear = of_quaternion(expected.xyzw);
+    const Thing got = call(a);
+    return proportional({got.linear[0].begin(), got.linear[0].end()}, {expected.linear[0].begin(), expected.linear[0].end()}, c.tolerance * 100);
+  }
+  expected.vector.at(c.index) = written;
+  return distance(expected, call(a)) <= c.tolerance * 100;
+}
+
 inline bool takes_part(const Claim& c, const Call& call, Random& random) {
   const Things a = arguments(c, random);
   const auto whole = all_numbers(operands(c, a).at(0));
@@ -465,6 +481,7 @@ inline bool holds(const Claim& c, const Call& call) {
   if (c.is == "build") return builds(c, call, random);
   if (c.is == "extract") return extracts(c, call, random);
   if (c.is == "elements" || c.is == "stream") return assembles(c, call, random);
+  if (c.is == "element" && c.of == std::vector<int>{1}) return writes_element(c, call, random);
   if (c.is == "element") return reads_element(c, call, random);
   if (c.is == "part") return takes_part(c, call, random);
   if (c.is == "fill") return fills(c, call, random);

@@ -132,7 +132,7 @@ inline Thing sample(const std::string& kind, Random& random) {
   } else if (kind == "row") {
     t = row(random.triple());
   } else if (kind == "number") {
-    t = number(random(0.2, 1.4));
+    t = number(random(0.15, 0.95));
   } else if (kind == "general") {
     t = matrix({random.triple(), random.triple(), random.triple()});
   } else {
@@ -294,15 +294,22 @@ inline Thing reframed(const Thing& t, const Thing& g, const Thing& h) {
   return r;
 }
 
+inline bool takes_triple(const Claim& c) {
+  return c.is == "build" && !c.sequence.empty() && !c.kinds.empty() && c.kinds.back() == "vector";
+}
+
 inline Square built(const Claim& c, const Things& a) {
   std::vector<Triple> axes;
   for (char s : c.sequence) axes.push_back(kIdentity.at(s - '1'));
   if (axes.empty())
     for (const auto& t : a)
       if (t.kind == Kind::vector) axes.push_back(t.vector);
+  const bool triple = takes_triple(c);  // then `angles` counts its components
   Square r = kIdentity;
   for (std::size_t i = 0; i < axes.size(); ++i) {
-    const double angle = a.at(c.angles.at(i)).numbers.at(0) * (c.unit == "deg" ? std::acos(-1.0) / 180 : 1);
+    const int place = c.angles.at(i);
+    const double given = triple ? a.back().vector.at(place - 1) : a.at(place).numbers.at(0);
+    const double angle = given * (c.unit == "deg" ? std::acos(-1.0) / 180 : 1);
     const Square one = turned(axes[i], angle);
     r = c.turning == "fixed" ? multiplied(one, r) : multiplied(r, one);
   }
@@ -359,7 +366,7 @@ inline bool builds(const Claim& c, const Call& call, Random& random) {
   for (int trial = 0; trial < 4; ++trial) {
     Things a = arguments(c, random);
     for (std::size_t i = 0; i < a.size(); ++i)
-      if (c.kinds[i] == "vector") a[i] = sample("unit", random);
+      if (c.kinds[i] == "vector" && !takes_triple(c)) a[i] = sample("unit", random);
       else if (c.kinds[i] == "number" && c.unit == "deg") a[i].numbers[0] *= 50;
     if (!(distance(matrix(built(c, a)), call(a)) <= c.tolerance * 100)) return false;
   }

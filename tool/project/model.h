@@ -22,6 +22,9 @@ struct TypeModel {
   // class that give the dimensions ("RowsAtCompileTime"). 3x3 is a matrix,
   // Nx1 a vector, 1xN a row, 1x1 a number.
   std::string rows, columns;
+  // Or template arguments (from 0) that are the dimensions: "rows argument",
+  // "columns argument" in the file; rows alone make a vector; -1: none.
+  int rows_argument = -1, columns_argument = -1;
   std::string inverse_form;  // "{}.transpose()"
   // Template argument (from 0) that holds the element type of a container or
   // the mapped type of a view; -1: none.

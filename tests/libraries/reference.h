@@ -294,8 +294,14 @@ inline Thing reframed(const Thing& t, const Thing& g, const Thing& h) {
   return r;
 }
 
-inline bool takes_triple(const Claim& c) {
-  return c.is == "build" && !c.sequence.empty() && !c.kinds.empty() && c.kinds.back() == "vector";
+// The argument that holds all angles, or -1.
+inline int triple_of_angles(const Claim& c) {
+  int place = -1;
+  for (std::size_t i = 0; i < c.kinds.size(); ++i) {
+    if (c.kinds[i] == "number") return -1;
+    if (c.kinds[i] == "vector") place = int(i);
+  }
+  return c.is == "build" && !c.sequence.empty() ? place : -1;
 }
 
 inline Square built(const Claim& c, const Things& a) {
@@ -304,11 +310,11 @@ inline Square built(const Claim& c, const Things& a) {
   if (axes.empty())
     for (const auto& t : a)
       if (t.kind == Kind::vector) axes.push_back(t.vector);
-  const bool triple = takes_triple(c);  // then `angles` counts its components
+  const int triple = triple_of_angles(c);  // then `angles` counts its components
   Square r = kIdentity;
   for (std::size_t i = 0; i < axes.size(); ++i) {
     const int place = c.angles.at(i);
-    const double given = triple ? a.back().vector.at(place - 1) : a.at(place).numbers.at(0);
+    const double given = triple >= 0 ? a.at(triple).vector.at(place - 1) : a.at(place).numbers.at(0);
     const double angle = given * (c.unit == "deg" ? std::acos(-1.0) / 180 : 1);
     const Square one = turned(axes[i], angle);
     r = c.turning == "fixed" ? multiplied(one, r) : multiplied(r, one);
@@ -366,7 +372,7 @@ inline bool builds(const Claim& c, const Call& call, Random& random) {
   for (int trial = 0; trial < 4; ++trial) {
     Things a = arguments(c, random);
     for (std::size_t i = 0; i < a.size(); ++i)
-      if (c.kinds[i] == "vector" && !takes_triple(c)) a[i] = sample("unit", random);
+      if (c.kinds[i] == "vector" && triple_of_angles(c) < 0) a[i] = sample("unit", random);
       else if (c.kinds[i] == "number" && c.unit == "deg") a[i].numbers[0] *= 50;
     if (!(distance(matrix(built(c, a)), call(a)) <= c.tolerance * 100)) return false;
   }

@@ -86,6 +86,10 @@ struct Hold {
   Span phrase;          // where the phrase stands
   std::string subject;  // what it is said of
   bool contract = false;  // on a parameter, a return or a field: seen from outside
+  // Of an argument after a call: the call and its formal. Where the callee
+  // changes the argument in place, the phrase does not bind what comes out.
+  int call = -1;
+  std::string formal;
 };
 
 struct Snapshot;

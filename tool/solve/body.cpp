@@ -127,6 +127,7 @@ class Body {
 
   void hold(const Operation& op) {
     const Hold& hold = function_.holds.at(op.item);
+    if (hold.call >= 0 && changed_in_place(hold)) return;
     Frames said = frames(hold.quantity);
     Certainty sure = certainty(hold.source);
     if (said.rows.known() &&
@@ -134,6 +135,15 @@ class Body {
       return;
     if (said.columns.known())
       unite(slot(op, {0, Slot::columns}), out_.sheet.constant(settled(said.columns)), 0, kResult, sure);
+  }
+
+  // The callee reads the argument before it writes it.
+  bool changed_in_place(const Hold& hold) const {
+    auto found = setting_.schemes.find(function_.calls.at(std::size_t(hold.call)).callee);
+    if (found == setting_.schemes.end()) return false;
+    auto read = [&](const Visible& v) { return v.formal == hold.formal && !v.after && v.path.empty(); };
+    return std::any_of(found->second.edges.begin(), found->second.edges.end(),
+                       [&](const SchemeEdge& e) { return read(e.left) || (!e.constant.known() && read(e.right)); });
   }
 
   // True when the join is settled for good.

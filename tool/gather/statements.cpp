@@ -1,0 +1,635 @@
+// Statements: control flow, entry and exit of a function.
+#include <algorithm>
+
+#include "gather/walker.h"
+
+namespace dextral::gather {
+
+using namespace clang;
+
+namespace {
+
+bool below(const std::string& path, const std::string& prefix) {
+  return path.compare(0, prefix.size(), prefix) == 0 &&
+         (path.size() == prefix.size() || path[prefix.size()] == '.' || path[prefix.size()] == '[');
+}
+
+bool leaves_early(const Stmt* statement) {
+  if (!statement) return false;
+  if (isa<BreakStmt, ContinueStmt, ReturnStmt, GotoStmt>(statement)) return true;
+  if (isa<LambdaExpr>(statement)) return false;
+  return std::any_of(statement->child_begin(), statement->child_end(), leaves_early);
+}
+
+}  // namespace
+
+Function Walker::run() {
+  Function& f = recorder_.function;
+  f.key = key_of(function_);
+  f.name = Types::name(function_);
+  f.span = unit_.source.span(SourceRange(function_->getLocation()));
+  f.template_instance = function_->isTemplateInstantiation();
+  for (const ParmVarDecl* parameter : function_->parameters()) f.parameter_names.push_back(parameter->getNameAsString());
+  if (const auto* method = dyn_cast<CXXMethodDecl>(function_))
+    for (const CXXMethodDecl* base : method->overridden_methods()) f.overrides.push_back(key_of(base));
+  if (!function_->doesThisDeclarationHaveABody() || !function_->getBody()) {
+    contract_only();
+    return std::move(f);
+  }
+  f.body = true;
+  enter();
+  if (const auto* constructor = dyn_cast<CXXConstructorDecl>(function_)) constructor_initialisers(constructor);
+  statement(function_->getBody());
+  leave();
+  return std::move(f);
+}
+
+// Parameters are read where the body reads them; those with a phrase at once.
+void Walker::enter() {
+  for (const ParmVarDecl* parameter : function_->parameters()) {
+    TypeFacts facts = unit_.types.of(parameter->getType());
+    if (!facts.group && facts.shape != Shape::pose && facts.shape != Shape::quaternion) continue;
+    bool input = !parameter->getType()->isPointerType() && !parameter->getType()->isLValueReferenceType();
+    bool constant = !input && parameter->getType()->isReferenceType() && parameter->getType().getNonReferenceType().isConstQualified();
+    if (!input && !constant) continue;
+    Place place = place_of(parameter);
+    ValueId id = read(place, parameter->getSourceRange());
+    if (id != ValueId::none)
+      recorder_.function.declarations.push_back({id, parameter->getNameAsString(), unit_.source.span(parameter->getSourceRange()), recorder_.at(id).rotation});
+  }
+}
+
+void Walker::leave() {
+  std::vector<std::string> paths;
+  for (const auto& [path, state] : now_.groups) paths.push_back(path);
+  for (const std::string& path : paths) settle(path);
+  // A field or parameter that was updated from itself is what its phrase says at the end.
+  for (const std::string& path : paths) {
+    GroupState state = now_.groups[path];
+    if (state.self_update && state.place.decl && path[0] != 'l' && path[0] != 't')
+      hold(state.base, state.place, state.range, true, state.place.decl->getNameAsString());
+  }
+  auto& exits = recorder_.function.exits;
+  for (const ParmVarDecl* parameter : function_->parameters()) {
+    Place place{"p" + std::to_string(parameter->getFunctionScopeIndex()), parameter->getType(), nullptr, -1, 0, {}, ""};
+    bool by_place = parameter->getType()->isReferenceType() || parameter->getType()->isPointerType();
+    if (by_place) exits.emplace_back(place.path, snapshot(place));
+  }
+  if (const auto* method = dyn_cast<CXXMethodDecl>(function_); method && !method->isStatic())
+    exits.emplace_back("this", snapshot(Place{"this", {}, nullptr, -1, 0, {}, ""}));
+  if (returned_objects_.size() == 1) exits.emplace_back("return", returned_objects_[0]);
+  if (returns_.empty()) return;
+  ValueId id = returns_[0].value;
+  if (returns_.size() > 1) {
+    const Value like = recorder_.at(id);
+    id = recorder_.value(like.shape, like.rotation, "return", recorder_.function.span, like.inverse_form);
+    recorder_.operation(OperationKind::join, id, returns_, recorder_.function.span, recorder_.function.name);
+  }
+  exits.emplace_back("return", id);
+  for (const Said& said : unit_.phrases.of_return(function_))
+    hold_return(id, said, returns_.size() > 1 ? said.span : recorder_.at(id).span, true, recorder_.at(id).text);
+}
+
+// What the phrases of a declaration promise, for callers.
+void Walker::contract_only() {
+  Function& f = recorder_.function;
+  for (const ParmVarDecl* parameter : function_->parameters()) {
+    TypeFacts facts = unit_.types.of(parameter->getType());
+    if (!facts.group && facts.shape != Shape::pose && facts.shape != Shape::quaternion) continue;
+    Place place = place_of(parameter);
+    if (place.offset != -1) continue;
+    QualType pointee = parameter->getType()->isReferenceType() ? parameter->getType().getNonReferenceType() : parameter->getType()->getPointeeType();
+    bool out = !pointee.isNull() && !pointee.isConstQualified();
+    Value like = unit_.types.value(parameter->getType(), parameter->getNameAsString(), unit_.source.span(parameter->getSourceRange()));
+    if (!out) {
+      read(place, parameter->getSourceRange());
+      f.exits.emplace_back(place.path, Snapshot{place.path, 0, {}});
+      continue;
+    }
+    ValueId id = recorder_.value(like.shape, like.rotation, like.text, like.span, like.inverse_form);
+    hold(id, place, parameter->getSourceRange(), true, like.text);
+    f.exits.emplace_back(place.path, id);
+  }
+  std::vector<Said> said = unit_.phrases.of_return(function_);
+  QualType type = unit_.types.bare(function_->getReturnType());
+  if (said.empty()) return;
+  Value like = unit_.types.value(type, f.name, f.span);
+  ValueId id = recorder_.value(like.shape, like.rotation, like.text, like.span, like.inverse_form);
+  for (const Said& s : said) hold_return(id, s, f.span, true, f.name);
+  f.exits.emplace_back("return", id);
+}
+
+void Walker::constructor_initialisers(const CXXConstructorDecl* constructor) {
+  Place self = this_ ? *this_ : Place{"this", unit_.ast.getTypeDeclType(constructor->getParent()), nullptr, -1, 0, {}, ""};
+  for (const CXXCtorInitializer* initialiser : constructor->inits()) {
+    const Expr* init = initialiser->getInit();
+    if (!init) continue;
+    Result from = evaluate(init);
+    if (!initialiser->isAnyMemberInitializer()) continue;
+    if (auto to = member(self, initialiser->getAnyMember())) {
+      if (isa<CXXConstructExpr>(init->IgnoreImplicit()) && cast<CXXConstructExpr>(init->IgnoreImplicit())->getNumArgs() == 0) continue;
+      assign(*to, from, init, init->getSourceRange());
+    }
+  }
+}
+
+void Walker::statement(const Stmt* statement) {
+  if (!statement || now_.dead) return;
+  if (const auto* expr = dyn_cast<Expr>(statement)) {
+    evaluate(expr);
+    return;
+  }
+  switch (statement->getStmtClass()) {
+    case Stmt::CompoundStmtClass:
+      for (const Stmt* child : cast<CompoundStmt>(statement)->body()) this->statement(child);
+      return;
+    case Stmt::DeclStmtClass:
+      for (const Decl* decl : cast<DeclStmt>(statement)->decls()) {
+        if (const auto* binding = dyn_cast<DecompositionDecl>(decl)) structured_binding(binding);
+        else if (const auto* variable = dyn_cast<VarDecl>(decl)) declare(variable);
+      }
+      return;
+    case Stmt::IfStmtClass: return branch(cast<IfStmt>(statement));
+    case Stmt::SwitchStmtClass: return select(cast<SwitchStmt>(statement));
+    case Stmt::ForStmtClass: {
+      const auto* loop = cast<ForStmt>(statement);
+      if (unrolled(loop)) return;
+      this->statement(loop->getInit());
+      return this->loop(loop, loop->getCond(), loop->getInc(), loop->getBody());
+    }
+    case Stmt::WhileStmtClass: return loop(statement, cast<WhileStmt>(statement)->getCond(), nullptr, cast<WhileStmt>(statement)->getBody());
+    case Stmt::DoStmtClass: {
+      const auto* loop = cast<DoStmt>(statement);
+      Expr::EvalResult once;
+      if (!loop->getCond()->isValueDependent() && loop->getCond()->EvaluateAsRValue(once, unit_.ast) && once.Val.isInt() && once.Val.getInt() == 0)
+        return this->statement(loop->getBody());
+      return this->loop(loop, loop->getCond(), nullptr, loop->getBody());
+    }
+    case Stmt::CXXForRangeStmtClass: {
+      const auto* range = cast<CXXForRangeStmt>(statement);
+      if (range->getInit()) this->statement(range->getInit());
+      return loop(range, nullptr, nullptr, range->getBody(), range);
+    }
+    case Stmt::ReturnStmtClass: return returned(cast<ReturnStmt>(statement));
+    case Stmt::BreakStmtClass:
+    case Stmt::ContinueStmtClass:
+      if (!breaks_.empty()) breaks_.back().push_back(now_);
+      now_.dead = true;
+      return;
+    case Stmt::GotoStmtClass: now_.dead = true; return;
+    case Stmt::LabelStmtClass: return this->statement(cast<LabelStmt>(statement)->getSubStmt());
+    case Stmt::AttributedStmtClass: return this->statement(cast<AttributedStmt>(statement)->getSubStmt());
+    case Stmt::CXXTryStmtClass: {
+      const auto* attempt = cast<CXXTryStmt>(statement);
+      Environment before = now_;
+      this->statement(attempt->getTryBlock());
+      std::vector<Environment> ends{now_};
+      for (unsigned i = 0; i < attempt->getNumHandlers(); ++i) {
+        now_ = before;
+        this->statement(attempt->getHandler(i)->getHandlerBlock());
+        ends.push_back(now_);
+      }
+      return join(ends, statement);
+    }
+    default: children(statement);
+  }
+}
+
+void Walker::declare(const VarDecl* variable) {
+  if (variable->isInvalidDecl() || variable->getType()->isDependentType()) return;
+  std::string path = path_of(variable);
+  now_.aliases.erase(variable);
+  if (!variable->isStaticLocal()) forget_below(path);
+  const Expr* init = variable->getInit();
+  Place place = place_of(variable);
+  bool refers = variable->getType()->isReferenceType() || variable->getType()->isPointerType();
+  if (!init) return;
+  std::set<std::string> reads;
+  std::set<std::string>* outer = std::exchange(reads_, nullptr);
+  Result from = evaluate(init);
+  if (from.place && unit_.types.is_number(init->getType()) && !refers) from.number = number(from, init);
+  reads_ = outer;
+  if (refers && from.place) {
+    now_.aliases[variable] = *from.place;
+    if (!unit_.phrases.of(variable).empty() && from.place->offset == -1) {
+      Place said = *from.place;
+      said.decl = variable;
+      hold(value(from, init), said, init->getSourceRange(), false, variable->getNameAsString());
+    }
+    return;
+  }
+  bool nothing = isa<CXXConstructExpr>(init->IgnoreImplicit()) && cast<CXXConstructExpr>(init->IgnoreImplicit())->getNumArgs() == 0;
+  if (nothing && !from.place && !from.object) return;
+  QualType type = variable->getType().getNonReferenceType();
+  place.type = type;
+  assign(place, from, init, SourceRange(variable->getLocation(), init->getEndLoc()));
+  auto found = now_.groups.find(place.path);
+  if (place.offset == -1 && found != now_.groups.end() && found->second.base != ValueId::none)
+    recorder_.function.declarations.push_back({found->second.base, variable->getNameAsString(), unit_.source.span(variable->getSourceRange()),
+                                               recorder_.at(found->second.base).rotation});
+}
+
+void Walker::structured_binding(const DecompositionDecl* decl) {
+  declare(decl);
+  for (const BindingDecl* binding : decl->bindings())
+    if (const VarDecl* holding = binding->getHoldingVar()) declare(holding);
+}
+
+void Walker::branch(const IfStmt* statement) {
+  if (statement->getInit()) this->statement(statement->getInit());
+  if (const VarDecl* variable = statement->getConditionVariable()) declare(variable);
+  if (statement->isConstexpr()) {
+    if (auto taken = statement->getNondiscardedCase(unit_.ast)) {
+      if (*taken) this->statement(*taken);
+      return;
+    }
+  }
+  Result condition = evaluate(statement->getCond());
+  if (!frames_.empty()) ++frames_.back().branches;
+  Environment before = now_;
+  this->statement(statement->getThen());
+  Environment yes = std::exchange(now_, std::move(before));
+  if (statement->getElse()) this->statement(statement->getElse());
+  join({std::move(yes), now_}, statement);
+}
+
+void Walker::select(const SwitchStmt* statement) {
+  if (statement->getInit()) this->statement(statement->getInit());
+  evaluate(statement->getCond());
+  if (!frames_.empty()) ++frames_.back().branches;
+  Environment before = now_;
+  breaks_.emplace_back();
+  bool has_default = false;
+  now_.dead = true;
+  const auto* body = dyn_cast<CompoundStmt>(statement->getBody());
+  std::vector<const Stmt*> list;
+  if (body) list.assign(body->body_begin(), body->body_end());
+  else list.push_back(statement->getBody());
+  for (const Stmt* child : list) {
+    bool label = false;
+    while (const auto* at = dyn_cast<SwitchCase>(child)) {
+      has_default |= isa<DefaultStmt>(at);
+      label = true;
+      child = at->getSubStmt();
+    }
+    if (label) join({now_, before}, statement);
+    this->statement(child);
+  }
+  std::vector<Environment> ends = std::move(breaks_.back());
+  breaks_.pop_back();
+  ends.push_back(now_);
+  if (!has_default) ends.push_back(before);
+  join(ends, statement);
+}
+
+namespace {
+
+// `for (int i = A; i < B; ++i)` with small constants: the variable and its values.
+struct Counted {
+  const VarDecl* variable = nullptr;
+  int from = 0, to = 0;
+};
+
+std::optional<int> constant(const Expr* expr, ASTContext& context) {
+  Expr::EvalResult result;
+  if (!expr || expr->isValueDependent() || !expr->EvaluateAsInt(result, context)) return std::nullopt;
+  return int(result.Val.getInt().getExtValue());
+}
+
+const VarDecl* variable_of(const Expr* expr) {
+  const auto* reference = expr ? dyn_cast<DeclRefExpr>(expr->IgnoreParenImpCasts()) : nullptr;
+  return reference ? dyn_cast<VarDecl>(reference->getDecl()) : nullptr;
+}
+
+std::optional<Counted> counted(const ForStmt* loop, ASTContext& context) {
+  Counted result;
+  const Expr* first = nullptr;
+  if (const auto* decl = dyn_cast_or_null<DeclStmt>(loop->getInit()); decl && decl->isSingleDecl()) {
+    result.variable = dyn_cast<VarDecl>(decl->getSingleDecl());
+    if (result.variable) first = result.variable->getInit();
+  } else if (const auto* set = dyn_cast_or_null<BinaryOperator>(loop->getInit()); set && set->getOpcode() == BO_Assign) {
+    result.variable = variable_of(set->getLHS());
+    first = set->getRHS();
+  }
+  const auto* condition = dyn_cast_or_null<BinaryOperator>(loop->getCond());
+  if (!result.variable || !first || !condition || variable_of(condition->getLHS()) != result.variable) return std::nullopt;
+  const Expr* step = loop->getInc();
+  if (const auto* increment = dyn_cast_or_null<UnaryOperator>(step)) {
+    if (!increment->isIncrementOp() || variable_of(increment->getSubExpr()) != result.variable) return std::nullopt;
+  } else if (const auto* add = dyn_cast_or_null<CompoundAssignOperator>(step)) {
+    if (add->getOpcode() != BO_AddAssign || variable_of(add->getLHS()) != result.variable || constant(add->getRHS(), context) != 1) return std::nullopt;
+  } else {
+    return std::nullopt;
+  }
+  auto from = constant(first, context), to = constant(condition->getRHS(), context);
+  if (!from || !to) return std::nullopt;
+  result.from = *from;
+  switch (condition->getOpcode()) {
+    case BO_LT: case BO_NE: result.to = *to; break;
+    case BO_LE: result.to = *to + 1; break;
+    default: return std::nullopt;
+  }
+  return result;
+}
+
+}  // namespace
+
+bool Walker::unrolled(const ForStmt* loop) {
+  auto count = counted(loop, unit_.ast);
+  if (!count || count->to - count->from > 9 || count->to <= count->from || leaves_early(loop->getBody())) return false;
+  int copies = count->to - count->from;
+  if (unrolled_ * copies > 81) return false;
+  statement(loop->getInit());
+  unrolled_ *= copies;
+  Place variable = place_of(count->variable);
+  for (int i = count->from; i < count->to; ++i) {
+    write_number(variable, Polynomial(double(i)), {});
+    statement(loop->getBody());
+  }
+  write_number(variable, Polynomial(double(count->to)), {});
+  unrolled_ /= copies;
+  return true;
+}
+
+// Paths of what a statement may write, as far as their roots and members go.
+std::set<std::string> Walker::written_in(const Stmt* whole) {
+  struct Finder : RecursiveASTVisitor<Finder> {
+    Walker& walker;
+    std::set<std::string> paths;
+    explicit Finder(Walker& w) : walker(w) {}
+
+    std::string path(const Expr* expr) {
+      expr = expr->IgnoreParenImpCasts();
+      if (const auto* reference = dyn_cast<DeclRefExpr>(expr)) {
+        const auto* variable = dyn_cast<VarDecl>(reference->getDecl());
+        return variable ? walker.place_of(variable).path : "";
+      }
+      if (isa<CXXThisExpr>(expr)) return walker.this_ ? walker.this_->path : "this";
+      if (const auto* member = dyn_cast<MemberExpr>(expr)) {
+        std::string base = path(member->getBase());
+        const auto* field = dyn_cast<FieldDecl>(member->getMemberDecl());
+        if (base.empty() || !field) return base;
+        TypeFacts facts = walker.unit_.types.of(walker.unit_.types.bare(member->getBase()->getType()));
+        if ((facts.group && !facts.model) || field->isAnonymousStructOrUnion()) return base;
+        if (auto slot = walker.unit_.phrases.component(field)) return base + "." + slot->group;
+        return base + "." + field->getNameAsString();
+      }
+      if (const auto* subscript = dyn_cast<ArraySubscriptExpr>(expr)) return path(subscript->getBase());
+      if (const auto* unary = dyn_cast<UnaryOperator>(expr)) return path(unary->getSubExpr());
+      if (const auto* call = dyn_cast<CXXMemberCallExpr>(expr)) return path(call->getImplicitObjectArgument());
+      if (const auto* call = dyn_cast<CXXOperatorCallExpr>(expr)) return call->getNumArgs() ? path(call->getArg(0)) : "";
+      return "";
+    }
+    void add(const Expr* expr) {
+      if (std::string p = path(expr); !p.empty()) paths.insert(p);
+    }
+    bool VisitBinaryOperator(BinaryOperator* op) {
+      if (op->isAssignmentOp()) add(op->getLHS());
+      return true;
+    }
+    bool VisitUnaryOperator(UnaryOperator* op) {
+      if (op->isIncrementDecrementOp()) add(op->getSubExpr());
+      return true;
+    }
+    bool VisitCallExpr(CallExpr* call) {
+      const FunctionDecl* callee = call->getDirectCallee();
+      unsigned first = 0;
+      if (const auto* member = dyn_cast<CXXMemberCallExpr>(call)) {
+        const CXXMethodDecl* method = member->getMethodDecl();
+        if (!method || !method->isConst()) add(member->getImplicitObjectArgument());
+      } else if (isa<CXXOperatorCallExpr>(call) && isa_and_nonnull<CXXMethodDecl>(callee)) {
+        first = 1;
+        if (!cast<CXXMethodDecl>(callee)->isConst() && call->getNumArgs()) add(call->getArg(0));
+      }
+      for (unsigned i = first; i < call->getNumArgs(); ++i) {
+        QualType type = callee && i - first < callee->getNumParams() ? callee->getParamDecl(i - first)->getType() : call->getArg(i)->getType();
+        bool by_place = type->isLValueReferenceType() || type->isPointerType();
+        QualType pointee = type->isReferenceType() ? type.getNonReferenceType() : type->getPointeeType();
+        if (by_place && !pointee.isNull() && !pointee.isConstQualified()) add(call->getArg(i));
+      }
+      return true;
+    }
+  } finder(*this);
+  finder.TraverseStmt(const_cast<Stmt*>(whole));
+  return finder.paths;
+}
+
+void Walker::loop(const Stmt* whole, const Stmt* condition, const Stmt* step, const Stmt* body, const CXXForRangeStmt* range) {
+  std::optional<Place> elements;
+  if (range) {
+    Result container = evaluate(range->getRangeInit());
+    if (container.place) elements = element(*container.place, Polynomial::unknown(), range->getLoopVariable()->getType().getNonReferenceType());
+  }
+  std::set<std::string> written = written_in(whole);
+  struct Head {
+    std::string path;
+    ValueId value;
+    ValueId before;
+  };
+  std::vector<Head> heads;
+  for (const std::string& prefix : written) {
+    std::vector<std::string> groups;
+    for (const auto& [path, state] : now_.groups)
+      if (below(path, prefix)) groups.push_back(path);
+    std::map<std::string, GroupState> kept;
+    for (const std::string& path : groups) {
+      settle(path);
+      GroupState state = now_.groups[path];
+      const Value like = recorder_.at(state.base);
+      Head head{path, recorder_.value(like.shape, like.rotation, like.text, like.span, like.inverse_form),
+                state.literal ? ValueId::none : state.base};
+      state.base = head.value;
+      state.literal = false;
+      kept[path] = state;
+      heads.push_back(head);
+    }
+    forget_below(prefix);
+    for (auto& [path, state] : kept) now_.groups[path] = state;
+  }
+  Environment before = now_;
+  if (const auto* expr = dyn_cast_or_null<Expr>(condition)) evaluate(expr);
+  if (range) {
+    const VarDecl* variable = range->getLoopVariable();
+    now_.aliases.erase(variable);
+    forget_below(path_of(variable));
+    if (const auto* binding = dyn_cast<DecompositionDecl>(variable)) {
+      if (elements) now_.aliases[binding] = *elements;
+    } else if (elements && variable->getType()->isReferenceType()) {
+      now_.aliases[variable] = *elements;
+    } else if (elements) {
+      Result from;
+      from.place = *elements;
+      assign(place_of(variable), from, nullptr, variable->getSourceRange());
+    }
+  }
+  breaks_.emplace_back();
+  statement(body);
+  if (const auto* expr = dyn_cast_or_null<Expr>(step); expr && !now_.dead) evaluate(expr);
+  std::vector<Environment> ends = std::move(breaks_.back());
+  breaks_.pop_back();
+  ends.push_back(now_);
+  for (const Head& head : heads) {
+    std::vector<Operand> operands;
+    if (head.before != ValueId::none) operands.push_back({head.before, {}, recorder_.at(head.before).text});
+    for (Environment& end : ends) {
+      if (end.dead) continue;
+      std::swap(now_, end);
+      if (now_.groups.contains(head.path)) {
+        ValueId id = settle(head.path);
+        if (!now_.groups[head.path].literal && id != head.value) operands.push_back({id, {}, recorder_.at(id).text});
+      }
+      std::swap(now_, end);
+    }
+    if (operands.empty()) continue;
+    recorder_.operation(OperationKind::join, head.value, operands, recorder_.at(head.value).span, recorder_.at(head.value).text);
+  }
+  // After the loop the heads hold, and what else was written is joined.
+  for (Environment& end : ends)
+    for (const Head& head : heads)
+      if (auto found = end.groups.find(head.path); found != end.groups.end()) {
+        found->second.base = head.value;
+        found->second.written.clear();
+        found->second.literal = false;
+      }
+  ends.push_back(std::move(before));
+  join(ends, whole);
+}
+
+void Walker::settle_groups(Environment& environment) {
+  std::swap(now_, environment);
+  std::vector<std::string> paths;
+  for (const auto& [path, state] : now_.groups)
+    if (!state.written.empty()) paths.push_back(path);
+  for (const std::string& path : paths) settle(path);
+  std::swap(now_, environment);
+}
+
+// What the living ends agree on stays; what they do not is joined softly.
+void Walker::join(const std::vector<Environment>& given, const Stmt* at) {
+  std::vector<Environment> ends;
+  for (const Environment& end : given)
+    if (!end.dead) ends.push_back(end);
+  if (ends.empty()) {
+    now_.dead = true;
+    return;
+  }
+  for (Environment& end : ends) settle_groups(end);
+  now_ = ends[0];
+  if (ends.size() == 1) return;
+  Environment result;
+  // Epochs: a path changed on one way only is something new afterwards.
+  for (const Environment& end : ends)
+    for (const auto& [path, epoch] : end.epochs) result.epochs.try_emplace(path, epoch);
+  for (auto& [path, epoch] : result.epochs)
+    for (const Environment& end : ends) {
+      auto found = end.epochs.find(path);
+      if (found == end.epochs.end() || found->second != epoch) {
+        epoch = ++epochs_;
+        break;
+      }
+    }
+  auto all = [&](auto member, auto&& agrees) {
+    for (const auto& [key, value] : ends[0].*member) {
+      bool same = std::all_of(ends.begin() + 1, ends.end(), [&](const Environment& end) {
+        auto found = (end.*member).find(key);
+        return found != (end.*member).end() && agrees(found->second, value);
+      });
+      if (same) (result.*member).emplace(key, value);
+    }
+  };
+  all(&Environment::numbers, [](const Polynomial& a, const Polynomial& b) { return a == b; });
+  all(&Environment::objects, [](const auto& a, const auto& b) { return a == b; });
+  all(&Environment::aliases, [](const Place& a, const Place& b) { return a.path == b.path && a.offset == b.offset; });
+  std::set<std::string> paths;
+  for (const Environment& end : ends)
+    for (const auto& [path, state] : end.groups) paths.insert(path);
+  for (const std::string& path : paths) {
+    std::vector<Operand> operands;
+    const GroupState* first = nullptr;
+    bool everywhere = true, self = false;
+    for (const Environment& end : ends) {
+      auto found = end.groups.find(path);
+      if (found == end.groups.end()) {
+        everywhere = false;
+        continue;
+      }
+      if (!first) first = &found->second;
+      self |= found->second.self_update;
+      if (found->second.literal || found->second.base == ValueId::none) continue;
+      if (std::none_of(operands.begin(), operands.end(), [&](const Operand& o) { return o.value == found->second.base; }))
+        operands.push_back({found->second.base, {}, recorder_.at(found->second.base).text});
+    }
+    GroupState state = *first;
+    state.self_update = self;
+    if (!everywhere) {
+      // Written on one way only, elsewhere still what it was at the start: read it there.
+      bool touched = std::any_of(ends.begin(), ends.end(), [&](const Environment& end) {
+        auto found = end.groups.find(path);
+        return found != end.groups.end() && found->second.changed;
+      });
+      for (const Environment& end : ends) {
+        if (end.groups.contains(path) || !touched) continue;
+        Environment saved = std::exchange(now_, end);
+        bool local = path[0] == 'l' || path[0] == 't';
+        if (!local) {
+          ValueId id = read_whole(state.place, state.range);
+          if (id != ValueId::none && std::none_of(operands.begin(), operands.end(), [&](const Operand& o) { return o.value == id; }))
+            operands.push_back({id, {}, recorder_.at(id).text});
+        }
+        now_ = std::move(saved);
+      }
+    }
+    if (operands.size() == 1) {
+      state.base = operands[0].value;
+      state.literal = false;
+    } else if (operands.size() > 1) {
+      const Value like = recorder_.at(operands[0].value);
+      state.base = recorder_.value(like.shape, like.rotation, like.text, span(at->getSourceRange()), like.inverse_form);
+      state.literal = false;
+      recorder_.operation(OperationKind::join, state.base, operands, recorder_.at(operands[0].value).span, like.text);
+    }
+    result.groups[path] = state;
+  }
+  now_ = std::move(result);
+}
+
+void Walker::returned(const ReturnStmt* statement) {
+  const Expr* expr = statement->getRetValue();
+  if (!expr) {
+    now_.dead = true;
+    return;
+  }
+  Result result = evaluate(expr);
+  if (!frames_.empty()) {
+    Frame& frame = frames_.back();
+    if (frame.returned) ++frame.branches;
+    frame.returned = true;
+    frame.result = result;
+    now_.dead = true;
+    return;
+  }
+  TypeFacts facts = unit_.types.of(unit_.types.bare(function_->getReturnType()));
+  SourceRange range = expr->getSourceRange();
+  if (facts.group || facts.shape == Shape::pose || facts.shape == Shape::quaternion) {
+    std::vector<Said> said = unit_.phrases.of_return(function_);
+    if (!literal(result)) {
+      Operand operand = this->operand(result, expr);
+      if (operand.value != ValueId::none) {
+        const Value like = recorder_.at(operand.value);
+        ValueId id = recorder_.value(like.shape, like.rotation, operand.text, span(range), like.inverse_form);
+        Operation& op = recorder_.operation(OperationKind::copy, id, {operand}, span(range), brief(range));
+        op.how = ReasonKind::returned;
+        op.target = recorder_.function.name;
+        for (const Said& s : said) hold_return(id, s, span(range), false, operand.text);
+        returns_.push_back({id, operand.span, operand.text});
+      }
+    }
+  } else if (result.object) {
+    returned_objects_.push_back(*result.object);
+  } else if (result.place && result.place->offset == -1 && !unit_.types.is_number(function_->getReturnType())) {
+    returned_objects_.push_back(snapshot(*result.place));
+  }
+  now_.dead = true;
+}
+
+}  // namespace dextral::gather

@@ -17,7 +17,8 @@ model gives, so that a right formula under a wrong name fails too.
              An entry without a line here gets its call from its name and `given`.
   interpolates  entries of kind sum whose result lies between the operands
   unnamed    entries that leave no call behind (defaulted, built in), and why
-  unchecked  entries that are not called, and why
+  unchecked  entries that are not called, and why; NAME* for all that begin so
+  inline namespaces  left out of the model's names
 An entry is its name, then its `given` in brackets where it has one.
 
 Usage: models.test.py BUILD_FOLDER [LIBRARY...]
@@ -157,6 +158,10 @@ class Call:
                 f".interpolates = {'true' if interpolates else 'false'}, .tolerance = {tolerance}}}")
 
 
+def is_listed(label, patterns):
+    return any(label == p or (p.endswith("*") and label.startswith(p[:-1])) for p in patterns)
+
+
 def collect(model, problems):
     """The calls of a model, and how many entries are left out with a reason."""
     check, calls, left, seen, used = model["check"], [], 0, set(), set()
@@ -165,7 +170,7 @@ def collect(model, problems):
             problems.append(f"{label}: stands twice")
         seen.add(label)
         code = check.get("calls", {}).get(label)
-        if code is None and (label in check.get("unchecked", {}) or entry["is"] in SILENT):
+        if code is None and (is_listed(label, check.get("unchecked", {})) or entry["is"] in SILENT):
             left += 1
             continue
         code = code or default_call(name, entry, check)
@@ -176,7 +181,7 @@ def collect(model, problems):
             calls.append(Call(len(calls), label, name, entry, one, check))
     for section in ("calls", "unchecked", "unnamed", "interpolates"):
         for label in check.get(section, {}):
-            if label not in seen:
+            if not label.endswith("*") and label not in seen:
                 problems.append(f"check.{section} speaks of {label}, which the model does not have")
     return calls, left
 
@@ -235,6 +240,8 @@ def misnamed(calls, ir, check):
     mangled = sorted(set().union(*found.values())) if found else []
     plain = subprocess.run([DEMANGLER], input="\n".join(mangled), capture_output=True, text=True, check=True).stdout
     names = {m: without_template_arguments(p) for m, p in zip(mangled, plain.splitlines())}
+    for space in check.get("inline namespaces", []):
+        names = {m: n.replace(f"::{space}::", "::") for m, n in names.items()}
     for call in calls:
         if call.label in check.get("unnamed", {}):
             continue

@@ -18,6 +18,7 @@ model gives, so that a right formula under a wrong name fails too.
   interpolates  entries of kind sum whose result lies between the operands
   unnamed    entries that leave no call behind (defaulted, built in), and why
   unchecked  entries that are not called, and why; NAME* for all that begin so
+  conjugate  true where a quaternion object stands for the map q* v q
   inline namespaces  left out of the model's names
 An entry is its name, then its `given` in brackets where it has one.
 
@@ -155,7 +156,8 @@ class Call:
                 f".order = {text('order')}, .sequence = {text('sequence')}, .sense = {text('sense')}, "
                 f".turning = {text('turning')}, .unit = {text('unit')}, .base = {e.get('base', 0)}, "
                 f".index = {e.get('index', -1)}, .angles = {ints(e.get('angles', []))}, "
-                f".interpolates = {'true' if interpolates else 'false'}, .tolerance = {tolerance}}}")
+                f".interpolates = {'true' if interpolates else 'false'}, .conjugate = {'true' if self.check.get('conjugate') else 'false'}, "
+                f".tolerance = {tolerance}}}")
 
 
 def is_listed(label, patterns):

@@ -188,6 +188,7 @@ struct Claim {
   int base = 0, index = -1;
   std::vector<int> angles;
   bool interpolates = false;
+  bool conjugate = false;  // a quaternion object of the library stands for q* v q
   double tolerance = 1e-9;
 };
 using Call = std::function<Thing(const Things&)>;
@@ -403,12 +404,13 @@ inline bool assembles(const Claim& c, const Call& call, Random& random) {
   int count = 0;
   for (std::size_t i = 1; i < c.kinds.size(); ++i) count += c.kinds[i] == "number";
   const Thing target = sample(count == 3 ? "vector" : count >= 12 ? "pose" : "rotation", random);
+  const Quaternion own = c.conjugate ? conjugate(target.xyzw) : target.xyzw;
   std::vector<double> n;
   const int rows = count == 12 && c.order == "columns" ? 3 : count >= 12 ? 4 : 3;
   const auto entry = [&](int i, int j) { return i == 3 ? double(j == 3) : j == 3 ? target.vector[i] : target.linear[i][j]; };
   if (count == 3) n.assign(target.vector.begin(), target.vector.end());
-  else if (count == 4 && c.order == "xyzw") n.assign(target.xyzw.begin(), target.xyzw.end());
-  else if (count == 4 && c.order == "wxyz") n = {target.xyzw[3], target.xyzw[0], target.xyzw[1], target.xyzw[2]};
+  else if (count == 4 && c.order == "xyzw") n.assign(own.begin(), own.end());
+  else if (count == 4 && c.order == "wxyz") n = {own[3], own[0], own[1], own[2]};
   else if (count == 9 || count == 16 || count == 12)
     for (int k = 0; k < count; ++k) {
       const int width = count == 9 ? 3 : 4;
@@ -425,6 +427,7 @@ inline bool assembles(const Claim& c, const Call& call, Random& random) {
 inline bool reads_element(const Claim& c, const Call& call, Random& random) {
   const Things start = arguments(c, random);
   const Thing o = operands(c, start).at(0);
+  const Quaternion own = c.conjugate ? conjugate(o.xyzw) : o.xyzw;
   std::vector<int> places;
   for (std::size_t i = 0; i < c.kinds.size(); ++i)
     if (c.kinds[i] == "number") places.push_back(int(i));
@@ -435,7 +438,7 @@ inline bool reads_element(const Claim& c, const Call& call, Random& random) {
     Things a = start;
     if (places.size() == 1) a[places[0]] = number(k + c.base);
     if (places.size() == 2) a[places[0]] = number(k / 3 + c.base), a[places[1]] = number(k % 3 + c.base);
-    const double expected = flat_vector ? o.vector[k] : o.kind == Kind::rotation ? o.xyzw[k] : o.linear[k / 3][k % 3];
+    const double expected = flat_vector ? o.vector[k] : o.kind == Kind::rotation ? own[k] : o.linear[k / 3][k % 3];
     const Thing got = call(a);
     if (got.numbers.size() != 1 || std::abs(got.numbers[0] - expected) > c.tolerance * 100) return false;
   }

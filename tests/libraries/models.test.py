@@ -7,6 +7,7 @@ the model claims on random proper rotations, general matrices and vectors
 model gives, so that a right formula under a wrong name fails too.
 
 "check" of a model:
+  package    the Debian package of the headers
   include    headers; code: C++ lines that give Make<T>::from(Thing) and read(T)
   flags, link  for the compiler, for the linker
   tolerance  1e-9 unless the library computes in single precision
@@ -263,7 +264,7 @@ def compile_and_run(model, calls, folder, problems):
     for command in (build, link):
         done = subprocess.run(command, capture_output=True, text=True)
         if done.returncode:
-            problems.append(f"{source.name} does not build:\n" + "\n".join(done.stderr.splitlines()[:60]))
+            problems.append(f"{source.name} does not build (its headers are in {check['package']}):\n" + "\n".join(done.stderr.splitlines()[:60]))
             return
     problems.extend(misnamed(calls, ir.read_text(), check))
     done = subprocess.run([str(binary)], capture_output=True, text=True, timeout=120)

@@ -23,7 +23,8 @@ struct TypeModel {
   // Nx1 a vector, 1xN a row, 1x1 a number.
   std::string rows, columns;
   // Or template arguments (from 0) that are the dimensions: "rows argument",
-  // "columns argument" in the file; rows alone make a vector; -1: none.
+  // "columns argument" in the file; rows alone make a vector, columns alone a
+  // row; -1: none.
   int rows_argument = -1, columns_argument = -1;
   std::string inverse_form;  // "{}.transpose()"
   // Template argument (from 0) that holds the element type of a container or

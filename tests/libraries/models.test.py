@@ -41,6 +41,10 @@ PLACE = re.compile(r"\{(\d+)(?::(\w+))?\}")
 GENERAL = {"product", "transpose", "inverse", "sum", "difference", "column", "row", "part", "element", "transform"}
 
 
+def truth(value):
+    return "true" if value else "false"
+
+
 def key(name, entry):
     text = name
     if entry.get("given"):
@@ -157,7 +161,7 @@ class Call:
                 f".order = {text('order')}, .sequence = {text('sequence')}, .sense = {text('sense')}, "
                 f".turning = {text('turning')}, .unit = {text('unit')}, .base = {e.get('base', 0)}, "
                 f".index = {e.get('index', -1)}, .angles = {ints(e.get('angles', []))}, "
-                f".interpolates = {'true' if interpolates else 'false'}, .conjugate = {'true' if self.check.get('conjugate') else 'false'}, "
+                f".interpolates = {truth(interpolates)}, .conjugate = {truth(self.check.get('conjugate'))}, "
                 f".tolerance = {tolerance}}}")
 
 
@@ -189,16 +193,19 @@ def collect(model, problems):
     return calls, left
 
 
+PROLOGUE = """#include "reference.h"
+#include <utility>
+using namespace reference;
+template <class T> struct Make;
+template <> struct Make<double> { static double from(const Thing& t) { return t.numbers.at(0); } };
+template <> struct Make<int> { static int from(const Thing& t) { return int(std::lround(t.numbers.at(0))); } };
+inline Thing read(double n) { return number(n); }
+template <class T> T& open(T& t) { return t; }"""
+
+
 def program(model, calls):
     check = model["check"]
-    lines = [f"#include <{header}>" for header in check["include"]]
-    lines += ['#include "reference.h"', "#include <functional>", "#include <utility>", "using namespace reference;",
-              "template <class T> struct Make;",
-              "template <> struct Make<double> { static double from(const Thing& t) { return t.numbers.at(0); } };",
-              "template <> struct Make<float> { static float from(const Thing& t) { return float(t.numbers.at(0)); } };",
-              "template <> struct Make<int> { static int from(const Thing& t) { return int(std::lround(t.numbers.at(0))); } };",
-              "inline Thing read(double n) { return number(n); }",
-              "template <class T> T& open(T& t) { return t; }"]
+    lines = [f"#include <{header}>" for header in check["include"]] + [PROLOGUE]
     lines += check["code"]
     lines += [call.function() for call in calls]
     lines.append("int main() {\n  int wrong = 0;\n  const auto tell = [&](bool ok, const char* what) {\n"
@@ -264,7 +271,8 @@ def compile_and_run(model, calls, folder, problems):
     for command in (build, link):
         done = subprocess.run(command, capture_output=True, text=True)
         if done.returncode:
-            problems.append(f"{source.name} does not build (its headers are in {check['package']}):\n" + "\n".join(done.stderr.splitlines()[:60]))
+            first = "\n".join(done.stderr.splitlines()[:60])
+            problems.append(f"{source.name} does not build (its headers are in {check['package']}):\n{first}")
             return
     problems.extend(misnamed(calls, ir.read_text(), check))
     done = subprocess.run([str(binary)], capture_output=True, text=True, timeout=120)

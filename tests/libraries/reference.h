@@ -149,7 +149,9 @@ inline Thing sample(const std::string& kind, Random& random) {
 
 // ---- comparison
 
-inline bool is_map(const Thing& t) { return t.kind == Kind::matrix || t.kind == Kind::rotation || t.kind == Kind::pose; }
+inline bool is_map(const Thing& t) {
+  return t.kind == Kind::matrix || t.kind == Kind::rotation || t.kind == Kind::pose;
+}
 
 inline double distance(Triple a, Triple b) { return std::sqrt(dot(a - b, a - b)); }
 inline double distance(const Square& a, const Square& b) {
@@ -407,7 +409,10 @@ inline bool assembles(const Claim& c, const Call& call, Random& random) {
   const Quaternion own = c.conjugate ? conjugate(target.xyzw) : target.xyzw;
   std::vector<double> n;
   const int rows = count == 12 && c.order == "columns" ? 3 : count >= 12 ? 4 : 3;
-  const auto entry = [&](int i, int j) { return i == 3 ? double(j == 3) : j == 3 ? target.vector[i] : target.linear[i][j]; };
+  const auto entry = [&](int i, int j) {
+    if (i == 3) return double(j == 3);
+    return j == 3 ? target.vector[i] : target.linear[i][j];
+  };
   if (count == 3) n.assign(target.vector.begin(), target.vector.end());
   else if (count == 4 && c.order == "xyzw") n.assign(own.begin(), own.end());
   else if (count == 4 && c.order == "wxyz") n = {own[3], own[0], own[1], own[2]};
@@ -455,8 +460,7 @@ inline bool writes_element(const Claim& c, const Call& call, Random& random) {
   if (is_map(expected)) {
     expected.xyzw.at(c.index) = written;
     expected.linear = of_quaternion(expected.xyzw);
-    const Thing got = call(a);
-    return proportional({got.linear[0].begin(), got.linear[0].end()}, {expected.linear[0].begin(), expected.linear[0].end()}, c.tolerance * 100);
+    return copied(matrix(expected.linear), matrix(call(a).linear), c.tolerance * 100);
   }
   expected.vector.at(c.index) = written;
   return distance(expected, call(a)) <= c.tolerance * 100;

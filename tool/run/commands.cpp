@@ -53,7 +53,7 @@ void add_limits(CLI::App& app, Limits& limits) {
       ->check(CLI::Range(1, 1024).description(""))
       ->type_name("N");
   app.add_option("--time-limit", limits.seconds, "Seconds for one file")
-      ->check(CLI::Validator(CLI::PositiveNumber).description(""))
+      ->check(CLI::Range(0.001, 1e6).description(""))
       ->type_name("SECONDS")
       ->capture_default_str();
   app.add_option("--memory-limit", limits.megabytes, "Megabytes for one file")

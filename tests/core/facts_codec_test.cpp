@@ -31,10 +31,19 @@ Function function_with_everything(FileId file) {
   f.parameter_names = {"a", "b"};
   f.overrides = {"base"};
   f.values = {{Shape::rotation, true, "R", "{}.transpose()", span(file, 5)}, {Shape::vector, false, "caf\xe9", "", {}}};
-  f.operations = {{OperationKind::shuffle, ValueId(1), {{ValueId(0), span(file, 6), "R"}}, {-3, 0, 1}, 7,
-                   ReasonKind::passed, span(file, 6), "R * v", "w"}};
+  f.operations = {{OperationKind::shuffle,
+                   ValueId(1),
+                   {{ValueId(0), span(file, 6), "R"}},
+                   {-3, 0, 1},
+                   7,
+                   ReasonKind::passed,
+                   span(file, 6),
+                   "R * v",
+                   "w"}};
   f.holds = {{covariance_of_position(), Source::remarked, "covariance of ...", span(file, 7), "P", true, 4, "p0"}};
-  f.calls = {{"other", "nav::other", true,
+  f.calls = {{"other",
+              "nav::other",
+              true,
               {{"p0", Snapshot{"l1", 1, {{"a", state}, {"b", state}, {"c", imu}}}, ValueId(1), span(file, 8), "s"}}}};
   f.readings = {{"p0.x", 9, ValueId(1)}};
   f.exits = {{"return", ValueId(0)}, {"this", Snapshot{"this", 5, {{"state", state}}}}};
@@ -97,9 +106,7 @@ TEST(FactsCodec, SharingKeepsTheBytesFew) {
   EXPECT_EQ(encode(decode(bytes).value()), bytes);
 }
 
-TEST(FactsCodec, EmptyFactsToo) {
-  EXPECT_EQ(encode(decode(encode(Facts{})).value()), encode(Facts{}));
-}
+TEST(FactsCodec, EmptyFactsToo) { EXPECT_EQ(encode(decode(encode(Facts{})).value()), encode(Facts{})); }
 
 TEST(FactsCodec, DamagedBytesGiveNothing) {
   const std::string bytes = encode(everything());

@@ -12,14 +12,16 @@ TEST(FactsPrint, OneLineForEachValueAndOperation) {
   auto at = [&](std::uint32_t line, std::uint32_t column) { return Span{file, {line, column}, {line, column + 1}}; };
   Function f{.key = "k", .name = "nav::to_body", .span = at(12, 1), .body = true};
   f.parameter_names = {"C_bn", "v"};
-  f.values = {{Shape::matrix, true, "C_bn", "", at(12, 30)}, {Shape::vector, false, "v", "", at(12, 45)},
+  f.values = {{Shape::matrix, true, "C_bn", "", at(12, 30)},
+              {Shape::vector, false, "v", "", at(12, 45)},
               {Shape::vector, false, "C_bn * v", "", at(13, 10)}};
   f.holds = {{.source = Source::declared, .said = "in ned", .subject = "v", .contract = true}};
-  f.operations = {
-      {.kind = OperationKind::hold, .operands = {{ValueId(1), {}, ""}}, .item = 0, .span = at(12, 45)},
-      {.kind = OperationKind::product, .result = ValueId(2), .operands = {{ValueId(0), {}, "C_bn"}, {ValueId(1), {}, "v"}},
-       .span = at(13, 10)},
-      {.kind = OperationKind::call, .item = 0, .span = at(14, 3)}};
+  f.operations = {{.kind = OperationKind::hold, .operands = {{ValueId(1), {}, ""}}, .item = 0, .span = at(12, 45)},
+                  {.kind = OperationKind::product,
+                   .result = ValueId(2),
+                   .operands = {{ValueId(0), {}, "C_bn"}, {ValueId(1), {}, "v"}},
+                   .span = at(13, 10)},
+                  {.kind = OperationKind::call, .item = 0, .span = at(14, 3)}};
   auto imu = std::make_shared<const Snapshot>(Snapshot{"this.imu", 1, {{"R", ValueId(0)}}});
   f.calls = {{"g", "nav::g", false, {{"this", Snapshot{"this", 2, {{"imu", imu}}}, ValueId::none, {}, "*this"}}}};
   f.readings = {{"p1", 0, ValueId(1)}};

@@ -29,8 +29,11 @@ TEST(Accept, SetsAsideTheRuleOnItsLines) {
 }
 
 TEST(Accept, FirstAndLastLineCount) {
-  EXPECT_TRUE(accept({finding("a", kOne, 9), finding("a", kOne, 12)}, {acceptance("a", kOne, 9, 12)}, true).findings.empty());
-  EXPECT_EQ(accept({finding("a", kOne, 8), finding("a", kOne, 13)}, {acceptance("a", kOne, 9, 12)}, true).findings.size(), 2u);
+  EXPECT_TRUE(
+      accept({finding("a", kOne, 9), finding("a", kOne, 12)}, {acceptance("a", kOne, 9, 12)}, true).findings.empty());
+  EXPECT_EQ(
+      accept({finding("a", kOne, 8), finding("a", kOne, 13)}, {acceptance("a", kOne, 9, 12)}, true).findings.size(),
+      2u);
 }
 
 TEST(Accept, AnotherRuleOrFileStays) {
@@ -46,7 +49,8 @@ TEST(Accept, AnotherRuleOrFileStays) {
 }
 
 TEST(Accept, TwoAcceptancesOfOneFindingAreBothUsed) {
-  EXPECT_TRUE(accept({finding("a", kOne, 3)}, {acceptance("a", kOne, 3, 3), acceptance("a", kOne, 1, 9)}, true).stale.empty());
+  EXPECT_TRUE(
+      accept({finding("a", kOne, 3)}, {acceptance("a", kOne, 3, 3), acceptance("a", kOne, 1, 9)}, true).stale.empty());
 }
 
 TEST(Accept, NothingIsStaleWhereSomethingWasNotRead) {
@@ -56,7 +60,8 @@ TEST(Accept, NothingIsStaleWhereSomethingWasNotRead) {
 
 TEST(WrongPhrases, KeepTheirWordsAndPlaces) {
   Span place{kOne, {4, 7}, {4, 10}};
-  std::vector<solve::Clash> got = wrong_phrases({{ComplaintKind::unknown_frame, place, "bodi", "no such frame", "body"}});
+  std::vector<solve::Clash> got =
+      wrong_phrases({{ComplaintKind::unknown_frame, place, "bodi", "no such frame", "body"}});
   ASSERT_EQ(got.size(), 1u);
   EXPECT_EQ(got[0].kind, solve::ClashKind::phrase);
   EXPECT_EQ(got[0].span, place);

@@ -37,9 +37,33 @@ TEST(Commands, LintTakesPathsAndFlagsForClang) {
 }
 
 TEST(Commands, LintTakesEveryOption) {
-  Lint got = lint({"--format", "sarif", "--output", "o", "--fail-on", "never", "--show", "likely", "-j2", "--time-limit",
-                   "1.5", "--memory-limit", "512", "--project", "p", "--compile-commands", "c", "--models", "m",
-                   "--dry-run", "--known", "k", "--update-known", "u", "--allow-unread", "--color", "always",
+  Lint got = lint({"--format",
+                   "sarif",
+                   "--output",
+                   "o",
+                   "--fail-on",
+                   "never",
+                   "--show",
+                   "likely",
+                   "-j2",
+                   "--time-limit",
+                   "1.5",
+                   "--memory-limit",
+                   "512",
+                   "--project",
+                   "p",
+                   "--compile-commands",
+                   "c",
+                   "--models",
+                   "m",
+                   "--dry-run",
+                   "--known",
+                   "k",
+                   "--update-known",
+                   "u",
+                   "--allow-unread",
+                   "--color",
+                   "always",
                    "--in-process"});
   EXPECT_EQ(got.format, Format::sarif);
   EXPECT_EQ(got.output, "o");
@@ -75,9 +99,16 @@ TEST(Commands, HelpAndVersionAreAnswered) {
 }
 
 TEST(Commands, AWrongCallSaysWhatIsWrong) {
-  for (const std::vector<std::string>& call : std::vector<std::vector<std::string>>{
-           {}, {"link"}, {"lint", "--formt", "text"}, {"lint", "--format", "xml"}, {"lint", "-j", "0"},
-           {"lint", "--time-limit", "-1"}, {"lint", "--write-repairs", "--dry-run"}, {"facts"}, {"rules", "a", "b"}}) {
+  for (const std::vector<std::string>& call :
+       std::vector<std::vector<std::string>>{{},
+                                             {"link"},
+                                             {"lint", "--formt", "text"},
+                                             {"lint", "--format", "xml"},
+                                             {"lint", "-j", "0"},
+                                             {"lint", "--time-limit", "-1"},
+                                             {"lint", "--write-repairs", "--dry-run"},
+                                             {"facts"},
+                                             {"rules", "a", "b"}}) {
     Answered got = answered(call);
     EXPECT_EQ(got.status, Status::wrong_call);
     EXPECT_TRUE(got.error.starts_with("dextral: ")) << got.error;

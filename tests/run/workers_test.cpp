@@ -46,7 +46,8 @@ Facts act(const project::Unit& unit) {
   if (unit.file == "segfault") raise(SIGSEGV);
   if (unit.file == "abort") std::abort();
   if (unit.file == "exit") _exit(3);
-  if (unit.file == "hang") while (true) pause();
+  if (unit.file == "hang")
+    while (true) pause();
   if (unit.file == "memory") use_memory();
   if (unit.file == "new") use_new();
   if (unit.file == "deep") recurse(32 << 10);
@@ -79,8 +80,12 @@ TEST(Workers, ResultsStandInTheOrderOfTheUnits) {
 }
 
 TEST(Workers, ACrashCostsItsOwnUnitOnly) {
-  const std::vector<std::string> expected{"a", "segfault: Clang crashed (signal 11)", "b",
-                                          "abort: Clang crashed (signal 6)", "exit: Clang gave up (exit status 3)", "c"};
+  const std::vector<std::string> expected{"a",
+                                          "segfault: Clang crashed (signal 11)",
+                                          "b",
+                                          "abort: Clang crashed (signal 6)",
+                                          "exit: Clang gave up (exit status 3)",
+                                          "c"};
   for (std::size_t workers : {1, 2, 6})
     EXPECT_EQ(reasons(read_all(units({"a", "segfault", "b", "abort", "exit", "c"}), act, limits(workers))), expected);
 }

@@ -82,7 +82,8 @@ auto order(const Function& f) {
 }
 auto order(const FieldFacts& f) { return std::tuple(!f.known, f.span); }
 auto order(const Complaint& c) {
-  return std::tuple(c.span, c.kind, std::string_view(c.wrong), std::string_view(c.message), std::string_view(c.nearest));
+  return std::tuple(c.span, c.kind, std::string_view(c.wrong), std::string_view(c.message),
+                    std::string_view(c.nearest));
 }
 auto order(const AcceptanceAt& a) {
   return std::tuple(a.span, std::string_view(a.acceptance.rule), std::string_view(a.acceptance.reason), a.from, a.to);

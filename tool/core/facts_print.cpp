@@ -16,16 +16,26 @@ namespace {
 
 const char* word(Shape shape) {
   switch (shape) {
-    case Shape::unknown: return "unknown";
-    case Shape::number: return "number";
-    case Shape::vector: return "vector";
-    case Shape::row: return "row";
-    case Shape::matrix: return "matrix";
-    case Shape::rotation: return "rotation";
-    case Shape::quaternion: return "quaternion";
-    case Shape::pose: return "pose";
-    case Shape::object: return "object";
-    case Shape::container: return "container";
+    case Shape::unknown:
+      return "unknown";
+    case Shape::number:
+      return "number";
+    case Shape::vector:
+      return "vector";
+    case Shape::row:
+      return "row";
+    case Shape::matrix:
+      return "matrix";
+    case Shape::rotation:
+      return "rotation";
+    case Shape::quaternion:
+      return "quaternion";
+    case Shape::pose:
+      return "pose";
+    case Shape::object:
+      return "object";
+    case Shape::container:
+      return "container";
   }
   return "unknown";
 }
@@ -109,7 +119,8 @@ std::string print(const Operation& operation, const Function& function) {
 }
 
 std::string head(const Function& function, const FileTable& files) {
-  std::string line = function.name + "(" + listed(function.parameter_names, [](const std::string& n) { return n; }) + ")";
+  std::string line =
+      function.name + "(" + listed(function.parameter_names, [](const std::string& n) { return n; }) + ")";
   if (function.template_instance) line += ", from a template";
   if (!function.body) line += ", declared only";
   if (!function.span.valid()) return line + "\n";

@@ -15,7 +15,7 @@
 namespace dextral::run {
 
 struct Accepted {
-  std::vector<Finding> findings;    // what stays
+  std::vector<Finding> findings;  // what stays
   std::vector<Finding> set_aside;
   std::vector<solve::Clash> stale;  // acceptances that matched nothing, by place
 };

@@ -33,7 +33,8 @@ void add_choice(CLI::App& app, const std::string& name, T& value, const std::map
                 const std::string& about) {
   std::vector<std::string> allowed;
   for (const auto& [word, meaning] : words) allowed.push_back(word);
-  app.add_option_function<std::string>(name, [&](const std::string& word) { value = words.at(word); }, about)
+  app.add_option_function<std::string>(
+         name, [&](const std::string& word) { value = words.at(word); }, about)
       ->check(CLI::IsMember(allowed).description(""))
       ->type_name("WORD");
 }

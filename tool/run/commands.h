@@ -32,7 +32,7 @@ struct Lint {
   project::Request request;
   Limits limits;
   Format format = Format::text;
-  std::string output;  // file, or empty: standard output
+  std::string output;                                     // file, or empty: standard output
   std::optional<Certainty> fail_on = Certainty::certain;  // nothing: never
   Certainty show = Certainty::suspect;
   std::string known;         // findings told before, or empty

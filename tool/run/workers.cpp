@@ -92,7 +92,8 @@ void be_quiet() {
   setrlimit(RLIMIT_CORE, &none);
 }
 
-[[noreturn]] void work(int socket, const std::vector<project::Unit>& units, const ReadUnit& read, const Limits& limits) {
+[[noreturn]] void work(int socket, const std::vector<project::Unit>& units, const ReadUnit& read,
+                       const Limits& limits) {
   prctl(PR_SET_PDEATHSIG, SIGKILL);
   be_quiet();
   raise_stack();

@@ -19,11 +19,11 @@
 namespace dextral::run {
 
 struct Limits {
-  std::size_t workers = 0;         // 0: one for each core, as far as memory goes
-  double seconds = 120;            // for one unit
-  std::size_t megabytes = 4096;    // for one unit
-  bool progress = true;            // a line on the terminal while it takes long
-  bool in_process = false;         // for debuggers: no workers, no limits
+  std::size_t workers = 0;       // 0: one for each core, as far as memory goes
+  double seconds = 120;          // for one unit
+  std::size_t megabytes = 4096;  // for one unit
+  bool progress = true;          // a line on the terminal while it takes long
+  bool in_process = false;       // for debuggers: no workers, no limits
 };
 
 using ReadUnit = std::function<Facts(const project::Unit&)>;

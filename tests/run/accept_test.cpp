@@ -18,10 +18,11 @@ AcceptanceAt acceptance(const std::string& rule, FileId file, std::uint32_t from
 }
 
 constexpr FileId kOne{1}, kTwo{2};
+const std::set<FileId> kBoth{kOne, kTwo};
 
 TEST(Accept, SetsAsideTheRuleOnItsLines) {
   Accepted got = accept({finding("wrong-order", kOne, 10), finding("wrong-order", kOne, 13)},
-                        {acceptance("wrong-order", kOne, 9, 12)}, true);
+                        {acceptance("wrong-order", kOne, 9, 12)}, kBoth);
   ASSERT_EQ(got.findings.size(), 1u);
   EXPECT_EQ(got.findings[0].span.begin.line, 13u);
   EXPECT_EQ(got.set_aside.size(), 1u);
@@ -30,15 +31,15 @@ TEST(Accept, SetsAsideTheRuleOnItsLines) {
 
 TEST(Accept, FirstAndLastLineCount) {
   EXPECT_TRUE(
-      accept({finding("a", kOne, 9), finding("a", kOne, 12)}, {acceptance("a", kOne, 9, 12)}, true).findings.empty());
+      accept({finding("a", kOne, 9), finding("a", kOne, 12)}, {acceptance("a", kOne, 9, 12)}, kBoth).findings.empty());
   EXPECT_EQ(
-      accept({finding("a", kOne, 8), finding("a", kOne, 13)}, {acceptance("a", kOne, 9, 12)}, true).findings.size(),
+      accept({finding("a", kOne, 8), finding("a", kOne, 13)}, {acceptance("a", kOne, 9, 12)}, kBoth).findings.size(),
       2u);
 }
 
 TEST(Accept, AnotherRuleOrFileStays) {
   Accepted got = accept({finding("frame-clash", kOne, 10), finding("wrong-order", kTwo, 10)},
-                        {acceptance("wrong-order", kOne, 9, 12)}, true);
+                        {acceptance("wrong-order", kOne, 9, 12)}, kBoth);
   EXPECT_EQ(got.findings.size(), 2u);
   ASSERT_EQ(got.stale.size(), 1u);
   EXPECT_EQ(got.stale[0].kind, solve::ClashKind::stale);
@@ -50,12 +51,36 @@ TEST(Accept, AnotherRuleOrFileStays) {
 
 TEST(Accept, TwoAcceptancesOfOneFindingAreBothUsed) {
   EXPECT_TRUE(
-      accept({finding("a", kOne, 3)}, {acceptance("a", kOne, 3, 3), acceptance("a", kOne, 1, 9)}, true).stale.empty());
+      accept({finding("a", kOne, 3)}, {acceptance("a", kOne, 3, 3), acceptance("a", kOne, 1, 9)}, kBoth).stale.empty());
 }
 
 TEST(Accept, NothingIsStaleWhereSomethingWasNotRead) {
-  EXPECT_TRUE(accept({}, {acceptance("a", kOne, 1, 1)}, false).stale.empty());
-  EXPECT_EQ(accept({}, {acceptance("a", kOne, 1, 1)}, true).stale.size(), 1u);
+  EXPECT_TRUE(accept({}, {acceptance("a", kOne, 1, 1)}, {}).stale.empty());
+  EXPECT_EQ(accept({}, {acceptance("a", kOne, 1, 1)}, kBoth).stale.size(), 1u);
+}
+
+Facts joined() {
+  Facts facts;
+  facts.read = true;
+  facts.files.add("/p/a.cpp");
+  facts.files.add("/p/a.h");
+  return facts;
+}
+
+TEST(SettledFiles, AllOfAWholeProjectElseTheUnits) {
+  const std::vector<project::Unit> units{{"/p/a.cpp", "/p", {}}};
+  EXPECT_EQ(settled_files(joined(), units, true), (std::set<FileId>{FileId(0), FileId(1)}));
+  EXPECT_EQ(settled_files(joined(), units, false), std::set<FileId>{FileId(0)});
+}
+
+TEST(SettledFiles, NoneWhereSomethingWasNotRead) {
+  Facts lost = joined(), broken = joined(), misspelt = joined();
+  lost.read = false;
+  broken.complaints = {{ComplaintKind::missing_header, {}, "b.h", "", ""}};
+  misspelt.complaints = {{ComplaintKind::unknown_frame, {}, "bodi", "", ""}};
+  EXPECT_TRUE(settled_files(lost, {}, true).empty());
+  EXPECT_TRUE(settled_files(broken, {}, true).empty());
+  EXPECT_EQ(settled_files(misspelt, {}, true).size(), 2u);
 }
 
 TEST(WrongPhrases, KeepTheirWordsAndPlaces) {

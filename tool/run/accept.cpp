@@ -1,5 +1,7 @@
 #include "run/accept.h"
 
+#include <algorithm>
+#include <string>
 #include <utility>
 
 namespace dextral::run {
@@ -22,7 +24,8 @@ solve::Clash stale(const AcceptanceAt& a) {
 
 }  // namespace
 
-Accepted accept(std::vector<Finding> findings, const std::vector<AcceptanceAt>& acceptances, bool all_read) {
+Accepted accept(std::vector<Finding> findings, const std::vector<AcceptanceAt>& acceptances,
+                const std::set<FileId>& settled) {
   Accepted result;
   std::vector<bool> used(acceptances.size(), false);
   for (Finding& finding : findings) {
@@ -33,9 +36,19 @@ Accepted accept(std::vector<Finding> findings, const std::vector<AcceptanceAt>& 
     }
     (accepted ? result.set_aside : result.findings).push_back(std::move(finding));
   }
-  for (std::size_t i = 0; all_read && i < acceptances.size(); ++i)
-    if (!used[i]) result.stale.push_back(stale(acceptances[i]));
+  for (std::size_t i = 0; i < acceptances.size(); ++i)
+    if (!used[i] && settled.contains(acceptances[i].span.file)) result.stale.push_back(stale(acceptances[i]));
   return result;
+}
+
+std::set<FileId> settled_files(const Facts& joined, const std::vector<project::Unit>& units, bool whole_project) {
+  if (!joined.read || std::any_of(joined.complaints.begin(), joined.complaints.end(), about_reading)) return {};
+  std::set<std::string> asked;
+  for (const project::Unit& unit : units) asked.insert(unit.file);
+  std::set<FileId> settled;
+  for (std::size_t i = 0; i < joined.files.names().size(); ++i)
+    if (whole_project || asked.contains(joined.files.names()[i])) settled.insert(FileId(i));
+  return settled;
 }
 
 bool about_reading(const Complaint& complaint) {

@@ -6,9 +6,11 @@
 // tell them like any other.
 #pragma once
 
+#include <set>
 #include <vector>
 
 #include "core/facts.h"
+#include "project/project.h"
 #include "rules/rule.h"
 #include "solve/solution.h"
 
@@ -20,9 +22,14 @@ struct Accepted {
   std::vector<solve::Clash> stale;  // acceptances that matched nothing, by place
 };
 
-// Only where everything was read in full can an acceptance be called stale:
-// elsewhere its finding may stand in what was not read.
-Accepted accept(std::vector<Finding>, const std::vector<AcceptanceAt>&, bool all_read);
+// An acceptance can be called stale only in a settled file: elsewhere its
+// finding may stand in what was not read.
+Accepted accept(std::vector<Finding>, const std::vector<AcceptanceAt>&, const std::set<FileId>& settled);
+
+// Files of which all findings are known: none where something could not be
+// read; all where the whole project was; else those that are units themselves,
+// since what a header means may show in a unit that was not asked for.
+std::set<FileId> settled_files(const Facts& joined, const std::vector<project::Unit>&, bool whole_project);
 
 // Complaints about phrases as clashes; those about the compilation are left out.
 std::vector<solve::Clash> wrong_phrases(const std::vector<Complaint>&);

@@ -1,0 +1,75 @@
+#include "run/answers.h"
+
+#include <algorithm>
+#include <filesystem>
+#include <iostream>
+
+#include "gather/gather.h"
+#include "rules/rule.h"
+#include "run/pages.h"
+#include "run/unread.h"
+
+namespace dextral::run {
+
+std::string program_path() {
+  std::error_code error;
+  return std::filesystem::read_symlink("/proc/self/exe", error).string();
+}
+
+std::string text(const project::Problem& problem) {
+  std::string line = problem.file.empty() ? "dextral" : problem.file;
+  if (problem.line) line += ":" + std::to_string(problem.line) + ":" + std::to_string(std::max(problem.column, 1u));
+  line += ": error: " + problem.message;
+  return problem.remedy.empty() ? line : line + "; " + problem.remedy;
+}
+
+bool tell_project(const project::Project& project) {
+  for (const project::Problem& problem : project.problems) std::cerr << text(problem) << "\n";
+  for (const std::string& note : project.notes) std::cerr << "dextral: " << note << "\n";
+  return project.problems.empty();
+}
+
+ReadUnit reader(const project::Project& project) {
+  std::vector<std::string> ids;
+  for (const Rule& rule : rules()) ids.push_back(rule.id);
+  return [&project, ids](const project::Unit& unit) { return gather::gather(unit, project, ids); };
+}
+
+Status answer(const Answered& answered) {
+  std::cout << answered.output;
+  std::cerr << answered.error;
+  return answered.status;
+}
+
+Status answer(const ShowRules& asked) {
+  if (asked.id.empty()) {
+    std::cout << rule_list(rules());
+    return Status::clean;
+  }
+  const Page page = rule_page(asked.id, rules(), page_folders(program_path()));
+  if (page.found) {
+    std::cout << page.text;
+    return Status::clean;
+  }
+  std::cerr << "dextral: " << page.text;
+  return Status::wrong_call;
+}
+
+Status answer(const ShowFacts& asked) {
+  const project::Project project = project::read(asked.request);
+  if (!tell_project(project)) return Status::wrong_call;
+  std::vector<Facts> units = read_all(project.units, reader(project), asked.limits);
+  const std::vector<Unread> not_read = unread(units);
+  for (const Unread& unit : not_read) std::cerr << text(unit) << "\n";
+  const Facts facts = join(std::move(units));
+  std::vector<const Function*> functions;
+  for (const Function& function : facts.functions) functions.push_back(&function);
+  auto by_place = [](const Function* a, const Function* b) {
+    return std::tie(a->span, a->key) < std::tie(b->span, b->key);
+  };
+  std::sort(functions.begin(), functions.end(), by_place);
+  for (const Function* function : functions) std::cout << print(*function, facts.files) << "\n";
+  return not_read.empty() ? Status::clean : Status::not_read;
+}
+
+}  // namespace dextral::run

@@ -1,0 +1,29 @@
+// The commands that answer without judging: `rules` and `facts`; and what is
+// told of a project before it is read.
+#pragma once
+
+#include <string>
+#include <vector>
+
+#include "project/project.h"
+#include "run/commands.h"
+
+namespace dextral::run {
+
+// This program's own path, or empty.
+std::string program_path();
+
+Status answer(const Answered&);
+Status answer(const ShowRules&);
+Status answer(const ShowFacts&);
+
+// Problems and notes to standard error; false where there is a problem.
+bool tell_project(const project::Project&);
+
+// "dextral.json:3:7: error: message; remedy"
+std::string text(const project::Problem&);
+
+// How a unit is read.
+ReadUnit reader(const project::Project&);
+
+}  // namespace dextral::run

@@ -601,7 +601,7 @@ void Walker::returned(const ReturnStmt* statement) {
   }
   Result result = evaluate(expr);
   if (!frames_.empty()) {
-    Frame& frame = frames_.back();
+    Inlining& frame = frames_.back();
     if (frame.returned) ++frame.branches;
     frame.returned = true;
     frame.result = result;

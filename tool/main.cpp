@@ -1,0 +1,80 @@
+// dextral: the order of the steps, and nothing else. Each step takes what the
+// step before gave; no step calls the next (docs/architecture.md).
+#include <algorithm>
+#include <iostream>
+#include <iterator>
+#include <type_traits>
+
+#include "core/facts.h"
+#include "project/project.h"
+#include "rules/rule.h"
+#include "run/accept.h"
+#include "run/answers.h"
+#include "run/commands.h"
+#include "run/unread.h"
+#include "run/workers.h"
+#include "solve/solve.h"
+
+namespace dextral {
+
+namespace {
+
+run::Status lint(const run::Lint& asked) {
+  // What to read, how it compiles, what it declares. Where the project file is
+  // wrong, all that follows would rest on guesses: it ends here.
+  const project::Project project = project::read(asked.request);
+  if (!run::tell_project(project)) return run::Status::wrong_call;
+
+  // Each file in a worker process, since Clang may crash or hang on any of them
+  // and must not take the others along.
+  std::vector<Facts> units = run::read_all(project.units, run::reader(project), asked.limits);
+  const std::vector<run::Unread> unread = run::unread(units);
+
+  // One program of many units: frames travel through calls from file to file.
+  const Facts facts = join(std::move(units));
+
+  // The frames of every value, and the places where two facts contradict.
+  run::raise_stack();
+  solve::Solution solution = solve::solve(facts, project.file.frames);
+
+  // Phrases that do not parse are contradictions of another kind; they are told
+  // like any other, so that a misspelt contract is not taken for a clean one.
+  std::ranges::move(run::wrong_phrases(facts.complaints), std::back_inserter(solution.clashes));
+
+  // Each contradiction to the rule that names it.
+  std::vector<Finding> findings = judge(solution);
+
+  // `accept RULE` names rules, so it is met after judging; what accepted
+  // nothing is itself a finding.
+  const bool whole = asked.request.paths.empty();
+  run::Accepted accepted = run::accept(std::move(findings), facts.acceptances,
+                                       run::settled_files(facts, project.units, whole));
+  solution.clashes = std::move(accepted.stale);
+  std::ranges::move(judge(solution), std::back_inserter(accepted.findings));
+
+  for (const Finding& finding : accepted.findings)
+    std::cout << facts.files.name(finding.span.file) << ":" << finding.span.begin.line << ":"
+              << finding.span.begin.column << ": warning: " << finding.sentence << " [" << finding.rule << "]\n";
+  for (const run::Unread& unit : unread) std::cerr << text(unit) << "\n";
+  std::vector<Certainty> certainties;
+  for (const Finding& finding : accepted.findings) certainties.push_back(finding.certainty);
+  return run::status(asked, unread.empty(), certainties);
+}
+
+}  // namespace
+
+}  // namespace dextral
+
+int main(int argc, char** argv) {
+  using namespace dextral;
+  const run::Command command = run::parse({argv + 1, argv + argc});
+  return int(std::visit(
+      [](const auto& asked) {
+        if constexpr (std::is_same_v<std::decay_t<decltype(asked)>, run::Lint>) {
+          return lint(asked);
+        } else {
+          return run::answer(asked);
+        }
+      },
+      command));
+}

@@ -10,6 +10,7 @@
 #include <compare>
 #include <memory>
 #include <optional>
+#include <tuple>
 #include <string>
 #include <vector>
 

@@ -1,8 +1,11 @@
 // dextral: the order of the steps, and nothing else. Each step takes what the
 // step before gave; no step calls the next (docs/architecture.md).
 #include <algorithm>
+#include <filesystem>
+#include <fstream>
 #include <iostream>
 #include <iterator>
+#include <set>
 #include <type_traits>
 
 #include "core/facts.h"
@@ -14,24 +17,30 @@
 #include "run/unread.h"
 #include "run/workers.h"
 #include "solve/solve.h"
+#include "tell/report.h"
 
 namespace dextral {
 
 namespace {
 
-// Until the reports of tool/tell are joined here, what needs them is refused.
-bool needs_reports(const run::Lint& asked) {
-  return asked.format != run::Format::text || asked.write_repairs || asked.dry_run ||
-         !(asked.output.empty() && asked.known.empty() && asked.update_known.empty());
+tell::Summary summary_of(const Facts& facts, const solve::Solution& solution, std::size_t units, std::size_t unread, std::size_t accepted) {
+  tell::Summary summary{units - unread, unread, {}, solution.rotations, solution.rotations_known, accepted};
+  std::set<std::string> missing;
+  for (const Complaint& complaint : facts.complaints)
+    if (complaint.kind == ComplaintKind::missing_header) missing.insert(complaint.wrong);
+  summary.missing_headers.assign(missing.begin(), missing.end());
+  return summary;
+}
+
+bool write(const std::string& path, const std::string& text) {
+  if (path.empty()) return bool(std::cout << text);
+  std::ofstream out(path, std::ios::binary);
+  if (out << text) return true;
+  std::cerr << "dextral: " << path << " cannot be written\n";
+  return false;
 }
 
 run::Status lint(const run::Lint& asked) {
-  if (needs_reports(asked)) {
-    std::cerr
-        << "dextral: --format, --output, --known, --update-known, --write-repairs and --dry-run do not work yet\n";
-    return run::Status::wrong_call;
-  }
-
   // What to read, how it compiles, what it declares. Where the project file is
   // wrong, all that follows would rest on guesses: it ends here.
   const project::Project project = project::read(asked.request);
@@ -59,15 +68,21 @@ run::Status lint(const run::Lint& asked) {
   // `accept RULE` names rules, so it is met after judging; what accepted
   // nothing is itself a finding.
   const bool whole = asked.request.paths.empty();
+  const std::size_t told = findings.size();
   run::Accepted accepted =
       run::accept(std::move(findings), facts.acceptances, run::settled_files(facts, project.units, whole));
   solution.clashes = std::move(accepted.stale);
   std::ranges::move(judge(solution), std::back_inserter(accepted.findings));
 
   std::erase_if(accepted.findings, [&](const Finding& finding) { return !run::shows(asked, finding.certainty); });
-  for (const Finding& finding : accepted.findings)
-    std::cout << facts.files.name(finding.span.file) << ":" << finding.span.begin.line << ":"
-              << finding.span.begin.column << ": warning: " << finding.sentence << " [" << finding.rule << "]\n";
+  // The words, in a fixed order whatever the number of workers.
+  tell::sort(accepted.findings, facts.files);
+  const tell::Style style{std::filesystem::current_path().string(), asked.fail_on, run::colored(asked)};
+  const tell::Summary summary = summary_of(facts, solution, project.units.size(), unread.size(), told - accepted.findings.size());
+  const bool as_json = asked.format == run::Format::json;
+  if (!write(asked.output, as_json ? tell::json(accepted.findings, facts.files, summary, style)
+                                   : tell::text(accepted.findings, facts.files, summary, style)))
+    return run::Status::wrong_call;
   for (const run::Unread& unit : unread) std::cerr << text(unit) << "\n";
   std::vector<Certainty> certainties;
   for (const Finding& finding : accepted.findings) certainties.push_back(finding.certainty);

@@ -1,5 +1,9 @@
 #include "run/commands.h"
 
+#include <unistd.h>
+
+#include <cstdlib>
+
 #include <CLI/CLI.hpp>
 #include <algorithm>
 #include <map>
@@ -144,6 +148,12 @@ Command parse(const std::vector<std::string>& given) {
 bool shows(const Lint& lint, Certainty certainty) { return certainty <= lint.show; }
 
 bool fails(const Lint& lint, Certainty certainty) { return lint.fail_on && certainty <= *lint.fail_on; }
+
+bool colored(const Lint& asked) {
+  if (asked.color != Color::automatic) return asked.color == Color::always;
+  const char* never = std::getenv("NO_COLOR");
+  return asked.output.empty() && !(never && *never) && isatty(1);
+}
 
 Status status(const Lint& lint, bool all_read, const std::vector<Certainty>& findings) {
   if (!all_read && !lint.allow_unread) return Status::not_read;

@@ -68,6 +68,9 @@ Command parse(const std::vector<std::string>& arguments);
 bool shows(const Lint&, Certainty);
 bool fails(const Lint&, Certainty);
 
+// Color as asked; by itself only on a terminal, and never with NO_COLOR set.
+bool colored(const Lint&);
+
 Status status(const Lint&, bool all_read, const std::vector<Certainty>& findings);
 
 }  // namespace dextral::run

@@ -14,6 +14,7 @@ struct CodeToken {
 std::string behind_bar(llvm::StringRef comment) {
   llvm::StringRef text = comment.drop_front(3);
   if (comment.starts_with("/*")) text.consume_back("*/");
+  else text = text.take_front(text.find("//"));  // an ordinary comment behind the phrase
   return text.rtrim("\r\n").str();
 }
 

@@ -215,7 +215,7 @@ class Attacher {
       std::vector<const NamedDecl*> parameters;
       for (const Declared& d : declared_)
         if (belongs_to(d, h->decl) && d.name_line == line) parameters.push_back(d.decl);
-      if (parameters.size() == 1 && h->name_line != line) return say(parameters[0], said);
+      if (parameters.size() == 1 && (h->name_line != line || h->decl->getNumParams() > 1)) return say(parameters[0], said);
       if (!h->decl->getReturnType()->isVoidType()) return say(h->decl, said);
       if (parameters.size() == 1) return say(parameters[0], said);
       return complain(ComplaintKind::unattached, said.span, said.text,

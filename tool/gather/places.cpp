@@ -418,6 +418,10 @@ void Walker::write_number(const Place& place, const Polynomial& number, SourceRa
     return;
   }
   if (place.offset == kAnyComponent) return forget(place);
+  // A component written again begins a new version of a group that is whole.
+  if (auto whole = now_.groups.find(place.path); whole != now_.groups.end() && whole->second.first_written == place.offset &&
+                                                 int(whole->second.written.size()) == size_of(whole->second.place, whole->second))
+    settle(place.path);
   GroupState& state = now_.groups[place.path];
   if (state.place.path.empty()) {
     state.place = place;
@@ -425,6 +429,7 @@ void Walker::write_number(const Place& place, const Polynomial& number, SourceRa
   }
   if (!place.whole.isNull()) state.place.type = state.place.whole = place.whole;
   if (place.size) state.place.size = place.size;
+  if (state.written.empty()) state.first_written = place.offset;
   state.written[place.offset] = number.known() ? number : fresh_number();
   state.range = state.range.isValid() && state.written.size() > 1 ? SourceRange(state.range.getBegin(), range.getEnd()) : range;
 }

@@ -66,7 +66,9 @@ void Walker::leave() {
   // A field or parameter that was updated from itself is what its phrase says at the end.
   for (const std::string& path : paths) {
     GroupState state = now_.groups[path];
-    if (state.self_update && state.place.decl && path[0] != 'l' && path[0] != 't')
+    const auto* parameter = dyn_cast_or_null<ParmVarDecl>(state.place.decl);
+    bool by_value = parameter && !parameter->getType()->isReferenceType() && !parameter->getType()->isPointerType();
+    if (state.self_update && state.place.decl && !by_value && path[0] != 'l' && path[0] != 't')
       hold(state.base, state.place, state.range, true, state.place.decl->getNameAsString());
   }
   auto& exits = recorder_.function.exits;
@@ -585,7 +587,7 @@ void Walker::join(const std::vector<Environment>& given, const Stmt* at) {
     } else if (operands.size() > 1) {
       const Value like = recorder_.at(operands[0].value);
       state.base = recorder_.value(like.shape, like.rotation, like.text, span(at->getSourceRange()), like.inverse_form);
-      state.literal = false;
+      state.literal = state.self_update = false;
       recorder_.operation(OperationKind::join, state.base, operands, recorder_.at(operands[0].value).span, like.text);
     }
     result.groups[path] = state;

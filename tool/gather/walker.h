@@ -75,6 +75,7 @@ struct Result {
 struct GroupState {
   ValueId base = ValueId::none;
   std::map<int, Polynomial> written;
+  int first_written = -1;     // the component that was written first
   clang::SourceRange range;   // of the last write
   bool literal = false;       // the base belongs to any frame
   bool changed = false;       // written since entry

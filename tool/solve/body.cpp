@@ -158,7 +158,8 @@ class Body {
         if (node == NodeId::none || out_.sheet.same(node, result)) continue;
         if (first == NodeId::none) first = node;
         const Frame *a = out_.sheet.frame(first), *b = out_.sheet.frame(node);
-        if (!out_.sheet.same(first, node) && (!a || !b || *a != *b)) agree = false;
+        bool unknown = !a || !b;
+        if (!out_.sheet.same(first, node) && (unknown ? !setting_.first_pass : *a != *b)) agree = false;
       }
       if (first == NodeId::none) continue;
       if (agree)

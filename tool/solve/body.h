@@ -53,6 +53,7 @@ struct Setting {
   const Schemes& schemes;
   const Twins& twins;
   const FrameCatalogue& frames;
+  bool first_pass = false;  // of functions that call each other: what a call gives is not known yet
 };
 
 inline constexpr std::uint32_t kNoOperation = 0xffffffff;

@@ -266,9 +266,10 @@ class Search {
     Operand a = operand(call.bindings[std::size_t(i)]), b = operand(call.bindings[std::size_t(j)]);
     if (b.value == ValueId::none || call.bindings[std::size_t(j)].formal == "return" || shape(a) != shape(b)) return;
     Repair repair;
-    repair.kind = maps(shape(a)) ? RepairKind::swap : RepairKind::swap_arguments;
+    bool factors = maps(shape(a)) && shape(a) != Shape::unknown;
+    repair.kind = factors ? RepairKind::swap : RepairKind::swap_arguments;
     exchange_text(repair, a, b);
-    add(index, 0, {{index, {op(index), {}, {i, j}, ""}}}, repair);
+    add(index, factors ? 0 : 4, {{index, {op(index), {}, {i, j}, ""}}}, repair);
   }
 
   void twin(std::uint32_t index, const Call& call) {

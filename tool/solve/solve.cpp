@@ -107,19 +107,19 @@ class Program {
   Solution run() {
     std::set<std::size_t> recursive;
     std::vector<std::size_t> order = bottom_up(facts_.functions, recursive);
-    for (const Function& f : functions_) add_scheme(contract_key(f.key), contract_of(f), {});
+    for (const Function& f : functions_) add_scheme(contract_key(f.key), contract_of(f), false);
     for (std::size_t i : order)
-      if (recursive.contains(i)) add_scheme(functions_[i].key, functions_[i], {});
+      if (recursive.contains(i)) add_scheme(functions_[i].key, functions_[i], true);
     for (std::size_t i : order) solve(i);
     sort();
     return std::move(solution_);
   }
 
  private:
-  Setting setting() const { return {schemes_, twins_, frames_}; }
+  Setting setting(bool first_pass = false) const { return {schemes_, twins_, frames_, first_pass}; }
 
-  void add_scheme(const std::string& key, const Function& function, const std::set<std::uint32_t>& removed) {
-    Sheeted sheeted = sheet_of(function, setting(), removed);
+  void add_scheme(const std::string& key, const Function& function, bool first_pass) {
+    Sheeted sheeted = sheet_of(function, setting(first_pass), {});
     schemes_[key] = scheme_of(function, sheeted, setting());
   }
 

@@ -121,6 +121,29 @@ void sort_and_keep_once(std::vector<T>& list) {
   list.erase(std::unique(list.begin(), list.end(), same), list.end());
 }
 
+// Two programs of one project may each define a function of the same name: the
+// second body gets a key of its own, and its unit's calls go there.
+class Bodies {
+ public:
+  void tell_apart(Facts& unit, const FileTable& files) {
+    std::map<std::string, std::string> renamed;
+    for (Function& f : unit.functions) {
+      if (!f.body) continue;
+      auto [first, fresh] = places_.try_emplace(f.key, f.span.file, f.span.begin.line);
+      if (fresh || first->second == std::pair(f.span.file, f.span.begin.line)) continue;
+      renamed[f.key] = f.key + " in " + files.name(f.span.file);
+      f.key = renamed[f.key];
+    }
+    if (renamed.empty()) return;
+    for (Function& f : unit.functions)
+      for (Call& call : f.calls)
+        if (auto other = renamed.find(call.callee); other != renamed.end()) call.callee = other->second;
+  }
+
+ private:
+  std::map<std::string, std::pair<FileId, std::uint32_t>> places_;
+};
+
 }  // namespace
 
 Facts join(std::vector<Facts> units) {
@@ -130,9 +153,11 @@ Facts join(std::vector<Facts> units) {
   program.read = true;
   ByKey<Function> functions;
   ByKey<FieldFacts> fields;
+  Bodies bodies;
   for (Facts& unit : units) {
     program.read = program.read && unit.read;
     renumber(unit, program.files);
+    bodies.tell_apart(unit, program.files);
     functions.add(unit.functions);
     fields.add(unit.fields);
     append(program.complaints, unit.complaints);

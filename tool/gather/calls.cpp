@@ -198,7 +198,10 @@ bool Walker::fits(const project::FunctionModel& model, Invocation& invocation) {
   auto is = [&](const std::string& wanted, const Argument& argument) {
     if (wanted.empty() || wanted == "any") return true;
     auto found = shapes.find(wanted);
-    return found != shapes.end() && shape(argument) == found->second;
+    if (found != shapes.end()) return shape(argument) == found->second;
+    // The name of a class: where a library stands in no namespace.
+    const CXXRecordDecl* record = unit_.types.bare(argument.expr->getType())->getAsCXXRecordDecl();
+    return record && Types::name(record) == wanted;
   };
   std::size_t first = invocation.has_object ? 1 : 0;
   if (!model.object.empty() && (!invocation.has_object || !is(model.object, invocation.arguments[0]))) return false;
@@ -361,6 +364,17 @@ Result Walker::assigned(Invocation& invocation) {
 
 Result Walker::component(Invocation& invocation, const project::FunctionModel& model) {
   Result result;
+  if (model.into != project::kReturn) {  // a setter of one component
+    Argument* target = argument(invocation, model.into);
+    Argument* from = model.of.empty() ? nullptr : argument(invocation, model.of[0]);
+    if (!target || !target->result.place || !from || model.index < 0) return forget_writable(invocation), result;
+    Place place = *target->result.place;
+    place.whole = place.type;
+    place.type = unit_.ast.DoubleTy;
+    place.offset = model.index;
+    write_number(place, number(from->result, from->expr), invocation.expr->getSourceRange());
+    return result;
+  }
   Argument* object = argument(invocation, invocation.has_object ? 0 : 1);
   if (!object) return {};
   TypeFacts facts = unit_.types.of(unit_.types.bare(object->expr->getType()));
@@ -374,10 +388,12 @@ Result Walker::component(Invocation& invocation, const project::FunctionModel& m
       known = known && k && *k >= model.base;
       if (k) indices.push_back(*k - model.base);
     }
+    if (!model.transposed.empty() && indices.size() == 2) std::swap(indices[0], indices[1]);
     int columns = facts.numbers == 16 ? 4 : facts.numbers == 4 && facts.shape == Shape::matrix ? 2 : 3;
     if (known && indices.size() == 1) index = indices[0];
     if (known && indices.size() == 2) index = facts.numbers > 4 || facts.shape == Shape::matrix ? columns * indices[0] + indices[1] : indices[0] + indices[1];
   }
+  if (facts.shape == Shape::pose) return {};
   if (facts.numbers == 0 && facts.shape != Shape::unknown) {
     if (object->result.place && !index) return {};
     if (object->result.place) {

@@ -470,6 +470,8 @@ void Walker::loop(const Stmt* whole, const Stmt* condition, const Stmt* step, co
   std::vector<Environment> ends = std::move(breaks_.back());
   breaks_.pop_back();
   ends.push_back(now_);
+  std::vector<Environment*> all_ends{&before};
+  for (Environment& end : ends) all_ends.push_back(&end);
   for (const Head& head : heads) {
     std::vector<Operand> operands;
     if (head.before != ValueId::none) operands.push_back({head.before, {}, recorder_.at(head.before).text});
@@ -483,16 +485,20 @@ void Walker::loop(const Stmt* whole, const Stmt* condition, const Stmt* step, co
       std::swap(now_, end);
     }
     if (operands.empty()) continue;
-    recorder_.operation(OperationKind::join, head.value, operands, recorder_.at(head.value).span, recorder_.at(head.value).text);
-  }
-  // After the loop the heads hold, and what else was written is joined.
-  for (Environment& end : ends)
-    for (const Head& head : heads)
-      if (auto found = end.groups.find(head.path); found != end.groups.end()) {
-        found->second.base = head.value;
+    Span where = recorder_.at(head.value).span;
+    recorder_.operation(OperationKind::join, head.value, operands, where, recorder_.at(head.value).text);
+    // What holds inside from the first round on need not hold behind the loop.
+    const Value like = recorder_.at(head.value);
+    ValueId after = operands.size() == 1 ? operands[0].value : recorder_.value(like.shape, like.rotation, like.text, where, like.inverse_form);
+    if (operands.size() > 1) recorder_.operation(OperationKind::join, after, operands, where, like.text);
+    for (Environment* end : all_ends)
+      if (auto found = end->groups.find(head.path); found != end->groups.end()) {
+        found->second.base = after;
         found->second.written.clear();
         found->second.literal = false;
+        if (operands.size() > 1) found->second.self_update = false;
       }
+  }
   ends.push_back(std::move(before));
   join(ends, whole);
 }

@@ -134,6 +134,16 @@ TypeFacts Types::by_model(const project::TypeModel& model, const CXXRecordDecl* 
     auto rows = constant_in(record, model.rows), columns = constant_in(record, model.columns);
     facts.shape = rows && columns ? shape_of_dimensions(*rows, *columns) : Shape::unknown;
     facts.numbers = rows && columns && *rows > 0 && *columns > 0 && *rows * *columns <= 16 ? int(*rows * *columns) : 0;
+  } else if ((model.rows_argument >= 0 || model.columns_argument >= 0) && special) {
+    auto given = [&](int index) -> long long {
+      if (index < 0) return 1;
+      if (unsigned(index) >= special->getTemplateArgs().size()) return 0;
+      const TemplateArgument& argument = special->getTemplateArgs()[unsigned(index)];
+      return argument.getKind() == TemplateArgument::Integral ? argument.getAsIntegral().getExtValue() : 0;
+    };
+    long long rows = given(model.rows_argument), columns = given(model.columns_argument);
+    facts.shape = rows > 0 && columns > 0 ? shape_of_dimensions(rows, columns) : Shape::unknown;
+    facts.numbers = rows > 0 && columns > 0 && rows * columns <= 16 ? int(rows * columns) : 0;
   } else if (model.element >= 0 && model.shape == Shape::unknown && special &&
              unsigned(model.element) < special->getTemplateArgs().size()) {
     const TemplateArgument& argument = special->getTemplateArgs()[unsigned(model.element)];

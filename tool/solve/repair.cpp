@@ -64,7 +64,11 @@ class Search {
     culprit.operation = candidates_[found.front().order].operation;
     for (const Success& success : found) {
       if (success.left != found.front().left || culprit.repairs.size() == 3) break;
-      culprit.repairs.push_back(candidates_[success.order].repair);
+      const Repair& repair = candidates_[success.order].repair;
+      bool told = std::any_of(culprit.repairs.begin(), culprit.repairs.end(), [&](const Repair& r) {
+        return r.kind == repair.kind && r.subject == repair.subject && r.other == repair.other;
+      });
+      if (!told) culprit.repairs.push_back(repair);
     }
     return culprit;
   }
@@ -185,6 +189,8 @@ class Search {
     const Operation& operation = op(index);
     const Operand& operand = operation.operands[std::size_t(i)];
     if (!maps(shape(operand)) || shape(operand) == Shape::unknown) return;
+    auto maker = maker_.find(operand.value);
+    if (maker != maker_.end() && (op(maker->second).kind == OperationKind::transpose || op(maker->second).kind == OperationKind::inverse)) return;
     bool joined = operation.kind == OperationKind::hold || operation.kind == OperationKind::join;
     add(index, joined ? 4 : 2, {{index, {operation, {i}, {-1, -1}, ""}}}, transposed(operand));
   }

@@ -33,7 +33,7 @@ LINE is a piece of the line, found once in the file, or `START >> PIECE`: the
 first line with PIECE from the first line with START on. A last part [d2 call]
 tags a fault: operations between the fault and the nearest phrase, and whether
 a call lies between. `LIST` with the suffix .json, if there, becomes the
-package's dextral.json.
+package's dextral.json, and the model files that it names are copied beside it.
 
 Limits. Lines are edited as text. A fault is real under the reading in the
 list; whether the phrases decide it is that reader's judgement.
@@ -246,6 +246,8 @@ class Overlay:
         self.commands = {os.path.normpath(os.path.join(c["directory"], c["file"])): c for c in json.loads(commands)}
         if project.exists():
             (self.folder / "dextral.json").write_text(project.read_text())
+            for model in json.loads(project.read_text()).get("models", []):
+                shutil.copy(project.parent / model, self.folder / model)
         self.files = {}
         self.add_phrases(package)
 
@@ -389,10 +391,10 @@ def mends(finding, fault, line):
 
 
 def span_of(item):
-    begin, end = item.get("begin") or item, item.get("end") or item
-    if "line" not in begin or "column" not in begin:
+    item = item.get("span") or item.get("place") or item
+    if "line" not in item or "column" not in item or item.get("end line") != item["line"]:
         return None
-    return begin["line"], begin["column"], end.get("column", end.get("end_column", begin["column"]))
+    return item["line"], item["column"], item["end column"]
 
 
 def classify(fault, overlay, base, faulty, seconds):

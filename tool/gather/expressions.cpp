@@ -5,6 +5,10 @@ namespace dextral::gather {
 
 using namespace clang;
 
+namespace {
+constexpr unsigned kMostInitialisers = 32;
+}
+
 void Walker::children(const Stmt* statement) {
   for (const Stmt* child : statement->children()) {
     if (const auto* expr = dyn_cast_or_null<Expr>(child)) evaluate(expr);
@@ -399,6 +403,7 @@ Result Walker::list(const InitListExpr* expr) {
   if (expr->isSyntacticForm() && expr->getSemanticForm()) expr = expr->getSemanticForm();
   TypeFacts facts = unit_.types.of(expr->getType());
   Result result;
+  if (expr->getNumInits() > kMostInitialisers) return {};  // a table
   if (facts.shape == Shape::number) {
     if (expr->getNumInits() == 1) return evaluate(expr->getInit(0));
     result.number = Polynomial(0.0);
@@ -423,8 +428,6 @@ Result Walker::list(const InitListExpr* expr) {
       Result from = evaluate(init);
       if (auto to = member(place, field)) assign(*to, from, init, init->getSourceRange());
     }
-    for (auto& [path, state] : now_.groups)
-      if (path.rfind(place.path + ".", 0) == 0) settle(path);
     result.object = snapshot(place);
     return result;
   }

@@ -355,9 +355,16 @@ Polynomial Walker::read_number(const Place& place, SourceRange range) {
   return found->second;
 }
 
+// Settling may add and remove groups: the paths are taken first.
+void Walker::settle_below(const std::string& prefix) {
+  std::vector<std::string> paths;
+  for (const auto& [path, state] : now_.groups)
+    if (!state.written.empty() && below(path, prefix)) paths.push_back(path);
+  for (const std::string& path : paths) settle(path);
+}
+
 Snapshot Walker::snapshot(const Place& place) {
-  for (auto& [path, state] : now_.groups)
-    if (below(path, place.path)) settle(path);
+  settle_below(place.path);
   Snapshot result{place.path, epoch(place.path), {}};
   const std::string* above = nullptr;
   for (const auto& [prefix, object] : now_.objects)

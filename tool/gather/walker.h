@@ -138,6 +138,7 @@ class Walker {
   ValueId read_whole(const Place&, clang::SourceRange);
   Polynomial read_number(const Place&, clang::SourceRange);
   Snapshot snapshot(const Place&);
+  void settle_below(const std::string& prefix);
   void write_value(const Place&, ValueId, bool literal, clang::SourceRange, const Operand& from, ReasonKind how, bool self);
   void write_number(const Place&, const Polynomial&, clang::SourceRange);
   void write_object(const Place&, const Snapshot&);

@@ -71,7 +71,8 @@ struct Problem {  // place and remedy of something wrong in a file
 // Parses one model file. Problems are appended; what is right is kept.
 LibraryModel read_model(const std::string& file, const std::string& text, std::vector<Problem>& problems);
 
-// All models of a run, looked up by name.
+// All models of a run, looked up by name. What is added later counts first, so
+// that a project's own model can correct one that came with the program.
 class ModelTable {
  public:
   void add(const LibraryModel&);

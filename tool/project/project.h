@@ -32,10 +32,12 @@ struct Contract {
 };
 
 struct ProjectFile {
-  std::string path;  // empty: none
-  std::string root;  // its folder, else the working folder
+  std::string path;       // empty: none
+  std::string root;       // its folder, else the working folder
+  std::string real_root;  // the root with all links followed; empty: found when needed
   FrameCatalogue frames = FrameCatalogue::builtin();
   std::vector<std::string> declared_frames;
+  bool only_declared_frames = false;  // a frame that is neither declared nor built in is an error
   std::vector<std::pair<std::string, std::string>> letters;  // "b" -> "body"
   std::vector<NamePattern> patterns;
   std::vector<Contract> contracts;
@@ -50,24 +52,24 @@ struct ProjectFile {
 std::optional<Quantity> named(const ProjectFile&, const std::string& name);
 
 struct Unit {
-  std::string file;       // absolute
-  std::string directory;  // where its command runs
+  std::string file;                    // absolute
+  std::string directory;               // where its command runs
   std::vector<std::string> arguments;  // for Clang, without program name and file, cleaned
 };
 
 struct Request {
-  std::vector<std::string> paths;       // files or folders; empty: the whole compile database
-  std::vector<std::string> flags;       // after "--"
-  std::string project_file;             // given, or empty: search upwards
-  std::string compile_commands;         // given, or empty: search upwards
-  std::string models_folder;            // rules/libraries, or empty: beside the program
+  std::vector<std::string> paths;  // files or folders; empty: the whole compile database
+  std::vector<std::string> flags;  // after "--"
+  std::string project_file;        // given, or empty: search upwards
+  std::string compile_commands;    // given, or empty: search upwards
+  std::string models_folder;       // rules/libraries, or empty: beside the program
 };
 
 struct Project {
   ProjectFile file;
   ModelTable models;
-  std::vector<Unit> units;  // sorted, each file once
-  std::vector<Problem> problems;  // any: the run ends with status 2
+  std::vector<Unit> units;         // sorted, each file once
+  std::vector<Problem> problems;   // any: the run ends with status 2
   std::vector<std::string> notes;  // told, but no fault: "no compile_commands.json found; default flags"
 };
 

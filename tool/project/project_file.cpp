@@ -2,9 +2,14 @@
 
 #include <algorithm>
 #include <filesystem>
+#include <set>
+#include <system_error>
 
 #include "phrase/phrase.h"
+#include "project/frames.h"
 #include "project/json_text.h"
+#include "project/names.h"
+#include "project/scope.h"
 
 namespace dextral::project {
 
@@ -12,118 +17,158 @@ namespace fs = std::filesystem;
 
 namespace {
 
+using NodeKind = JsonNode::Kind;
+
+constexpr std::size_t kMostWildcards = 2;
+
+// `{to}` as a word of the same length that no frame has, so that places in the
+// phrase stay what they are.
+std::string slot_word(const std::string& slot) { return "_" + slot + "_"; }
+
+std::string plain_words(std::string phrase) {
+  for (char& c : phrase)
+    if (c == '{' || c == '}') c = '_';
+  return phrase;
+}
+
 class FileReader {
  public:
-  FileReader(ProjectFile& file, std::vector<Problem>& problems) : file_(file), problems_(problems) {}
+  FileReader(ProjectFile& file, std::vector<Problem>& problems, std::vector<std::string>& notes)
+      : file_(file), notes_(notes), check_(file.path, "docs/project-file.md", problems) {}
 
   void run(const JsonNode& root) {
-    if (!is(root, JsonNode::Kind::object, "an object")) return;
-    keys(root, {"frames", "letters", "names", "contracts", "scope", "outside", "models", "compile commands", "about"});
-    each(root, "frames", [&](const JsonNode& key, const JsonNode& node) { frame(key, node); });
-    each(root, "letters", [&](const JsonNode& key, const JsonNode& node) { letter(key, node); });
-    each(root, "names", [&](const JsonNode& key, const JsonNode& node) { pattern(key, node); });
-    each(root, "contracts", [&](const JsonNode& key, const JsonNode& node) { contract(key, node); });
-    texts(root, "scope", file_.scope);
-    texts(root, "outside", file_.outside);
-    texts(root, "models", file_.models);
-    if (const JsonNode* commands = root.find("compile commands"); commands && is(*commands, JsonNode::Kind::text, "a path")) file_.compile_commands = commands->text;
+    if (!check_.is(root, NodeKind::object, "an object")) return;
+    check_.keys(root, {"$schema", "about", "frames", "only declared frames", "letters", "names", "contracts", "scope",
+                       "outside", "models", "compile commands"});
+    check_.text(root, "$schema");
+    check_.text(root, "about");
+    if (const JsonNode* frames = check_.get(root, "frames", NodeKind::object, "an object of frames"))
+      read_frames(*frames, file_, check_);
+    if (const JsonNode* only = check_.get(root, "only declared frames", NodeKind::boolean, "true or false"))
+      file_.only_declared_frames = only->truth;
+    each(root, "letters", "an object: letters to frames", &FileReader::letter);
+    each(root, "names", "an object: patterns to phrases", &FileReader::pattern);
+    each(root, "contracts", "an object: qualified names to phrases", &FileReader::contract);
+    globs(root, "scope", file_.scope);
+    globs(root, "outside", file_.outside);
+    models(root);
+    compile_commands(root);
   }
 
  private:
-  void problem(const JsonNode& at, const std::string& message, const std::string& remedy, std::size_t inside = 0) {
-    problems_.push_back({file_.path, at.line, at.column + std::uint32_t(inside ? inside + 1 : 0), message, remedy});
+  void each(const JsonNode& root, const char* key, const char* what,
+            void (FileReader::*visit)(const JsonNode&, const JsonNode&)) {
+    const JsonNode* node = check_.get(root, key, NodeKind::object, what);
+    if (!node) return;
+    for (const JsonMember& member : node->members) (this->*visit)(member.key, member.value);
   }
-  bool is(const JsonNode& node, JsonNode::Kind kind, const std::string& what) {
-    if (node.kind == kind) return true;
-    problem(node, what + " was expected here", "see docs/project-file.md");
-    return false;
-  }
-  void keys(const JsonNode& node, const std::vector<std::string>& known) {
-    for (const JsonMember& member : node.members) {
-      if (std::find(known.begin(), known.end(), member.key.text) != known.end()) continue;
-      auto near = nearest_word(member.key.text, known);
-      problem(member.key, "the key \"" + member.key.text + "\" is unknown", near ? "did you mean \"" + *near + "\"?" : "take it out");
-    }
-  }
-  template <typename Visit>
-  void each(const JsonNode& root, const char* key, Visit visit) {
-    const JsonNode* node = root.find(key);
-    if (!node || !is(*node, JsonNode::Kind::object, "an object")) return;
-    for (const JsonMember& member : node->members) visit(member.key, member.value);
-  }
-  void texts(const JsonNode& root, const char* key, std::vector<std::string>& out) {
-    const JsonNode* node = root.find(key);
-    if (!node || !is(*node, JsonNode::Kind::list, "a list of texts")) return;
+
+  // The texts of a list.
+  std::vector<const JsonNode*> texts(const JsonNode& root, const char* key, const char* what) {
+    std::vector<const JsonNode*> list;
+    const JsonNode* node = check_.get(root, key, NodeKind::list, what);
+    if (!node) return list;
     for (const JsonNode& item : node->items)
-      if (is(item, JsonNode::Kind::text, "a text")) out.push_back(item.text);
+      if (check_.is(item, NodeKind::text, "a text")) list.push_back(&item);
+    return list;
   }
 
-  void frame(const JsonNode& key, const JsonNode& node) {
-    if (!is(node, JsonNode::Kind::object, "an object")) return;
-    keys(node, {"axes", "hand", "parallel to", "alias of", "about"});
-    file_.declared_frames.push_back(key.text);
-    if (const JsonNode* of = node.find("alias of")) {
-      if (auto wrong = file_.frames.alias(key.text, of->text)) problem(*of, *wrong, "name another frame");
-      return;
-    }
-    FrameFacts facts;
-    facts.name = key.text;
-    if (const JsonNode* hand = node.find("hand")) {
-      if (hand->text != "right" && hand->text != "left") problem(*hand, "right or left was expected", "write \"right\" or \"left\"");
-      else facts.hand = hand->text == "left" ? Hand::left : Hand::right;
-    }
-    if (const JsonNode* parallel = node.find("parallel to")) facts.parallel_to = parallel->text;
-    if (const JsonNode* about = node.find("about")) facts.about = about->text;
-    if (const JsonNode* axes = node.find("axes"); axes && !axis_list(*axes, facts)) return;
-    if (auto wrong = file_.frames.declare(facts)) problem(key, *wrong, "correct the frame");
-  }
-
-  bool axis_list(const JsonNode& axes, FrameFacts& facts) {
-    if (axes.items.size() != 3) return problem(axes, "three axes were expected", "for instance [\"forward\", \"right\", \"down\"]"), false;
-    std::array<Direction, 3> list{};
-    std::vector<std::string> words;
-    for (int i = 0; i < 18; ++i) words.push_back(text(Direction(i)));
-    for (std::size_t i = 0; i < 3; ++i) {
-      auto found = direction(axes.items[i].text);
-      if (!found) {
-        auto near = nearest_word(axes.items[i].text, words);
-        problem(axes.items[i], "\"" + axes.items[i].text + "\" is no direction", near ? "did you mean \"" + *near + "\"?" : "north, east, down, forward, right ...");
-        return false;
-      }
-      list[i] = *found;
-    }
-    facts.axes = list;
-    return true;
+  void note(const JsonNode& at, std::size_t offset, const std::string& message) {
+    notes_.push_back(file_.path + ":" + std::to_string(at.line) + ":" + std::to_string(at.column_of(offset)) + ": " +
+                     message);
   }
 
   void letter(const JsonNode& key, const JsonNode& node) {
-    if (!is(node, JsonNode::Kind::text, "the name of a frame")) return;
+    bool word = !key.text.empty() && std::all_of(key.text.begin(), key.text.end(),
+                                                 [](unsigned char c) { return std::isalnum(c) || c == '_'; });
+    if (!word) return check_.problem(key, "\"" + key.text + "\" cannot stand in a name", "use letters, digits and _");
+    if (!check_.is(node, NodeKind::text, "the name of a frame")) return;
     if (!file_.frames.find(node.text)) {
       auto near = nearest_word(node.text, file_.frames.names());
-      return problem(node, "the frame \"" + node.text + "\" is not declared", near ? "did you mean \"" + *near + "\"?" : "declare it under \"frames\"");
+      return check_.problem(node, "the frame \"" + node.text + "\" is not declared",
+                            near ? "did you mean \"" + *near + "\"?" : "declare it under \"frames\"");
     }
     file_.letters.emplace_back(key.text, node.text);
   }
 
   void pattern(const JsonNode& key, const JsonNode& node) {
-    if (!is(node, JsonNode::Kind::text, "a phrase")) return;
-    if (key.text.find('{') == std::string::npos || key.text.find('}') == std::string::npos)
-      return problem(key, "the pattern \"" + key.text + "\" has no placeholder", "write for instance \"C_{to}{from}\"");
-    std::string trial = node.text;
-    for (std::size_t at; (at = trial.find('{')) != std::string::npos;) {
-      std::size_t close = trial.find('}', at);
-      if (close == std::string::npos) return problem(node, "a placeholder is not closed", "write {to}");
-      std::string slot = trial.substr(at, close - at + 1);
-      if (key.text.find(slot) == std::string::npos) return problem(node, "the pattern has no placeholder " + slot, "use the placeholders of the pattern");
-      trial.replace(at, close - at + 1, "frame");
+    auto parts = pattern_parts(key.text);
+    if (!parts)
+      return check_.problem(key, "a placeholder in \"" + key.text + "\" is not complete",
+                            "write it as a word in braces: {to}");
+    std::set<std::string> slots;
+    std::size_t wildcards = 0;
+    for (const PatternPart& part : *parts) {
+      if (part.placeholder && part.text == "any")
+        ++wildcards;
+      else if (part.placeholder)
+        slots.insert(part.text);
     }
-    if (auto parsed = phrase::parse(trial); auto* error = std::get_if<phrase::Error>(&parsed)) return wrong_phrase(node, *error);
+    if (slots.empty())
+      return check_.problem(key, "the pattern \"" + key.text + "\" has no placeholder for a frame",
+                            "write for instance \"C_{to}{from}\"");
+    if (wildcards > kMostWildcards)
+      return check_.problem(key, "the pattern has more than two {any}", "say more of the name");
+    if (!separable(*parts))
+      return check_.problem(key, "two placeholders stand side by side, and there are no letters to tell them apart",
+                            "say under \"letters\" which letters stand for which frames");
+    if (!check_.is(node, NodeKind::text, "a phrase") || !template_fits(node, slots)) return;
     file_.patterns.push_back({key.text, node.text});
   }
 
-  void wrong_phrase(const JsonNode& node, const phrase::Error& error) {
-    problem(node, "the phrase does not parse: " + error.message + (error.wrong.empty() ? "" : ", not `" + error.wrong + "`"),
-            error.nearest.empty() ? "see docs/phrases.md" : "did you mean `" + error.nearest + "`?", error.offset);
+  bool separable(const std::vector<PatternPart>& parts) const {
+    if (!file_.letters.empty()) return true;
+    auto pair = [](const PatternPart& a, const PatternPart& b) { return a.placeholder && b.placeholder; };
+    return std::adjacent_find(parts.begin(), parts.end(), pair) == parts.end();
+  }
+
+  bool template_fits(const JsonNode& node, const std::set<std::string>& slots) {
+    auto parts = pattern_parts(node.text);
+    if (!parts) {
+      check_.problem(node, "a placeholder in the phrase is not complete", "write it as a word in braces: {to}");
+      return false;
+    }
+    std::set<std::string> used;
+    for (const PatternPart& part : *parts) {
+      if (!part.placeholder) continue;
+      used.insert(slot_word(part.text));
+      if (slots.contains(part.text)) continue;
+      std::string remedy = part.text == "any" ? "{any} stands for no frame; give the part a name"
+                                              : word_remedy(part.text, {slots.begin(), slots.end()});
+      check_.problem_inside(node, part.offset, "the pattern has no placeholder {" + part.text + "}", remedy);
+      return false;
+    }
+    return phrase_fits(node, plain_words(node.text), used);
+  }
+
+  // `slots` are words that stand for frames to come.
+  bool phrase_fits(const JsonNode& node, const std::string& text, const std::set<std::string>& slots) {
+    auto parsed = phrase::parse(text);
+    if (const auto* error = std::get_if<phrase::Error>(&parsed)) {
+      check_.problem_inside(
+          node, std::min(error->offset, node.text.size()),
+          "the phrase does not parse: " + error->message + (error->wrong.empty() ? "" : ", not `" + error->wrong + "`"),
+          error->nearest.empty() ? "see docs/phrases.md" : "did you mean `" + error->nearest + "`?");
+      return false;
+    }
+    std::set<std::string> told;
+    for (const Frame& frame : phrase::mentioned(std::get<Quantity>(parsed)))
+      if (!frame.variable && !slots.contains(frame.name) && told.insert(frame.name).second && !known(node, frame.name))
+        return false;
+    return true;
+  }
+
+  bool known(const JsonNode& node, const std::string& name) {
+    if (file_.frames.find(name)) return true;
+    auto near = file_.frames.nearest(name);
+    std::size_t at = node.text.find(name);
+    std::string message = "no frame \"" + name + "\" is declared";
+    std::string remedy = near ? "did you mean \"" + *near + "\"?" : "declare it under \"frames\"";
+    if (file_.only_declared_frames)
+      check_.problem_inside(node, at, message, remedy);
+    else if (near)
+      note(node, at, message + "; " + remedy);
+    return !file_.only_declared_frames;
   }
 
   void contract(const JsonNode& key, const JsonNode& node) {
@@ -131,65 +176,68 @@ class FileReader {
     contract.entity = key.text;
     contract.line = key.line;
     auto add = [&](const std::string& name, const JsonNode& text) {
-      if (!is(text, JsonNode::Kind::text, "a phrase")) return;
-      auto parsed = phrase::parse(text.text);
-      if (auto* error = std::get_if<phrase::Error>(&parsed)) return wrong_phrase(text, *error);
-      contract.phrases.emplace_back(name, text.text);
+      if (check_.is(text, NodeKind::text, "a phrase") && phrase_fits(text, text.text, {}))
+        contract.phrases.emplace_back(name, text.text);
     };
-    if (node.kind == JsonNode::Kind::text) add("", node);
-    else if (is(node, JsonNode::Kind::object, "a phrase, or an object of phrases"))
+    if (key.text.empty() || key.text.rfind("::", 0) == 0)
+      return check_.problem(key, "a qualified name was expected", "write for instance \"nav::rotate\"");
+    if (node.kind == NodeKind::text)
+      add("", node);
+    else if (check_.is(node, NodeKind::object, "a phrase, or an object of phrases"))
       for (const JsonMember& member : node.members) add(member.key.text, member.value);
-    file_.contracts.push_back(std::move(contract));
+    if (!contract.phrases.empty()) file_.contracts.push_back(std::move(contract));
+  }
+
+  void globs(const JsonNode& root, const char* key, std::vector<std::string>& out) {
+    for (const JsonNode* item : texts(root, key, "a list of globs")) {
+      std::string wrong = wrong_glob(item->text);
+      if (wrong.empty())
+        out.push_back(item->text);
+      else
+        check_.problem(*item, wrong + ": \"" + item->text + "\"", "write for instance \"src/**\" or \"tests/*.cpp\"");
+    }
+  }
+
+  void models(const JsonNode& root) {
+    for (const JsonNode* item : texts(root, "models", "a list of model files")) {
+      std::error_code error;
+      if (fs::is_regular_file(normal(item->text, file_.root), error))
+        file_.models.push_back(item->text);
+      else
+        check_.problem(*item, "there is no model file " + normal(item->text, file_.root),
+                       "give its path from the folder of the project file");
+    }
+  }
+
+  void compile_commands(const JsonNode& root) {
+    const JsonNode* node = check_.get(root, "compile commands", NodeKind::text, "a path");
+    if (!node) return;
+    std::error_code error;
+    if (fs::exists(normal(node->text, file_.root), error))
+      file_.compile_commands = node->text;
+    else
+      check_.problem(*node, "there is no " + normal(node->text, file_.root),
+                     "configure the build that writes it, or take the key out");
   }
 
   ProjectFile& file_;
-  std::vector<Problem>& problems_;
+  std::vector<std::string>& notes_;
+  JsonChecker check_;
 };
-
-bool glob(const char* pattern, const char* text) {
-  if (!*pattern) return !*text;
-  if (pattern[0] == '*' && pattern[1] == '*') {
-    const char* rest = pattern[2] == '/' ? pattern + 3 : pattern + 2;
-    for (const char* at = text;; ++at) {
-      if (glob(rest, at)) return true;
-      if (!*at) return false;
-    }
-  }
-  if (*pattern == '*') {
-    for (const char* at = text;; ++at) {
-      if (glob(pattern + 1, at)) return true;
-      if (!*at || *at == '/') return false;
-    }
-  }
-  return *text && (*pattern == '?' ? *text != '/' : *pattern == *text) && glob(pattern + 1, text + 1);
-}
-
-// A glob, a file or a folder.
-bool covers(const std::string& pattern, const std::string& path) {
-  std::string clean = pattern;
-  while (!clean.empty() && clean.back() == '/') clean.pop_back();
-  if (clean == "." || clean == "**") return true;
-  return glob(clean.c_str(), path.c_str()) || path.rfind(clean + "/", 0) == 0;
-}
 
 }  // namespace
 
-bool ProjectFile::in_scope(const std::string& path) const {
-  std::string relative = fs::path(path).lexically_normal().lexically_relative(root).string();
-  if (relative.empty() || relative.rfind("..", 0) == 0) return false;
-  auto any = [&](const std::vector<std::string>& list) { return std::any_of(list.begin(), list.end(), [&](const std::string& p) { return covers(p, relative); }); };
-  return (scope.empty() || any(scope)) && !any(outside);
-}
-
-ProjectFile read_project_file(const std::string& path, std::vector<Problem>& problems) {
+ProjectFile read_project_file(const std::string& path, std::vector<Problem>& problems,
+                              std::vector<std::string>& notes) {
   ProjectFile file;
   file.path = path;
   file.root = fs::path(path).parent_path().string();
+  file.real_root = real(file.root);
   std::string text;
   if (!read_file(path, text, problems)) return file;
   std::size_t before = problems.size();
   JsonNode root = read_json(path, text, problems);
-  if (problems.size() == before) FileReader(file, problems).run(root);
+  if (problems.size() == before) FileReader(file, problems, notes).run(root);
   return file;
 }
 

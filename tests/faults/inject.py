@@ -69,6 +69,10 @@ class Wrong(Exception):
     """Something in a list or a call is wrong; the text says where."""
 
 
+class Unread(Exception):
+    """A unit was not read: nothing can be said about its faults."""
+
+
 @dataclasses.dataclass
 class Fault:
     id: str
@@ -304,7 +308,10 @@ def lint(dextral, overlay, units, extra):
                          capture_output=True, text=True)
     if run.returncode not in (0, 1):
         raise Wrong(f"{dextral} ended with {run.returncode}: {run.stderr.strip()[:400]}")
-    return findings(json.loads(run.stdout), overlay.folder), time.monotonic() - began
+    report = json.loads(run.stdout)
+    if report.get("not read"):
+        raise Unread(run.stderr.strip().splitlines()[-1] if run.stderr.strip() else "a unit was not read")
+    return findings(report, overlay.folder), time.monotonic() - began
 
 
 def first_place(thing):
@@ -430,6 +437,11 @@ def classify(fault, overlay, base, faulty, seconds):
     }
 
 
+def not_judged(fault, why):
+    return {**dataclasses.asdict(fault), "found": "unread", "told": [], "right_rule": False, "right_repair": False,
+            "mended": False, "alarms": [], "lost": [], "seconds": 0, "why": why}
+
+
 # ---- the whole
 
 
@@ -443,7 +455,10 @@ def run_all(options, package, overlays):
         key = tuple(units)
         if key not in bases:
             overlay = free.get()
-            bases[key] = lint(options.dextral, overlay, units, options.extra)[0]
+            try:
+                bases[key] = lint(options.dextral, overlay, units, options.extra)[0]
+            except Unread as unread:
+                bases[key] = str(unread)
             free.put(overlay)
         return bases[key]
 
@@ -453,8 +468,14 @@ def run_all(options, package, overlays):
             overlay.inject(fault)
             if options.check:
                 return {**dataclasses.asdict(fault), "errors": compile_errors(overlay, fault.units)}
-            told, seconds = lint(options.dextral, overlay, fault.units, options.extra)
-            return classify(fault, overlay, bases[tuple(fault.units)], told, seconds)
+            base = bases[tuple(fault.units)]
+            if isinstance(base, str):
+                return not_judged(fault, base)
+            try:
+                told, seconds = lint(options.dextral, overlay, fault.units, options.extra)
+            except Unread as unread:
+                return not_judged(fault, str(unread))
+            return classify(fault, overlay, base, told, seconds)
         finally:
             overlay.restore(fault)
             free.put(overlay)
@@ -464,7 +485,7 @@ def run_all(options, package, overlays):
             base_of(fault.units)
     with concurrent.futures.ThreadPoolExecutor(len(overlays)) as pool:
         results = list(pool.map(one, package.faults))
-    unit_bases = {" ".join(k): sorted(key for key, _ in v) for k, v in bases.items()}
+    unit_bases = {" ".join(k): v if isinstance(v, str) else sorted(key for key, _ in v) for k, v in bases.items()}
     return results, unit_bases
 
 
@@ -475,13 +496,13 @@ def table(rows):
 
 
 def summary(name, results):
-    rows = [["package", "kind", "faults", "line", "function", "chain", "miss", "rule", "repair", "mended", "alarms"]]
+    rows = [["package", "kind", "faults", "line", "function", "chain", "miss", "unread", "rule", "repair", "mended", "alarms"]]
     groups = collections.defaultdict(list)
     for r in results:
         groups[r["kind"]].append(r)
     for kind, items in [*sorted(groups.items()), ("all", results)]:
         found = collections.Counter(r["found"] for r in items)
-        rows.append([name, kind, len(items), found["line"], found["function"], found["chain"], found["miss"],
+        rows.append([name, kind, len(items), found["line"], found["function"], found["chain"], found["miss"], found["unread"],
                      sum(r["right_rule"] for r in items), sum(r["right_repair"] for r in items),
                      sum(r["mended"] for r in items), sum(len(r["alarms"]) for r in items)])
     return table(rows)
@@ -491,7 +512,7 @@ def by_tag(name, results):
     rows = [["package", "tag", "faults", "found", "rule"]]
     for tag in sorted({t for r in results for t in r["tags"]}):
         items = [r for r in results if tag in r["tags"]]
-        rows.append([name, tag, len(items), sum(r["found"] != "miss" for r in items),
+        rows.append([name, tag, len(items), sum(r["found"] not in ("miss", "unread") for r in items),
                      sum(r["right_rule"] for r in items)])
     return table(rows)
 
@@ -551,7 +572,7 @@ def main(arguments):
         show(results)
     print(summary(package.name, results))
     print(by_tag(package.name, results))
-    print(f"phrases: {len(package.phrases)}; findings in the baseline: {sum(map(len, bases.values()))}")
+    print(f"phrases: {len(package.phrases)}; findings in the baseline: {sum(len(b) for b in bases.values() if not isinstance(b, str))}")
     return 0
 
 

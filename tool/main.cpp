@@ -23,6 +23,11 @@ namespace dextral {
 
 namespace {
 
+// What is not built yet is refused, never half done.
+bool not_yet(const run::Lint& asked) {
+  return asked.format == run::Format::sarif || asked.write_repairs || asked.dry_run || !asked.known.empty() || !asked.update_known.empty();
+}
+
 tell::Summary summary_of(const Facts& facts, const solve::Solution& solution, std::size_t units, std::size_t unread, std::size_t accepted) {
   tell::Summary summary{units - unread, unread, {}, solution.rotations, solution.rotations_known, accepted};
   std::set<std::string> missing;
@@ -41,6 +46,11 @@ bool write(const std::string& path, const std::string& text) {
 }
 
 run::Status lint(const run::Lint& asked) {
+  if (not_yet(asked)) {
+    std::cerr << "dextral: --format sarif, --known, --update-known, --write-repairs and --dry-run do not work yet\n";
+    return run::Status::wrong_call;
+  }
+
   // What to read, how it compiles, what it declares. Where the project file is
   // wrong, all that follows would rest on guesses: it ends here.
   const project::Project project = project::read(asked.request);

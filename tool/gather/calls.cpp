@@ -509,7 +509,7 @@ Result Walker::part(Invocation& invocation, const project::FunctionModel& model)
   std::string key = name;
   if (const auto* arguments = invocation.callee->getTemplateSpecializationArgs())
     for (const TemplateArgument& argument : arguments->asArray())
-      if (argument.getKind() == TemplateArgument::Integral) key += "," + std::to_string(argument.getAsIntegral().getExtValue());
+      if (argument.getKind() == TemplateArgument::Integral) key += "," + std::to_string(whole_number(argument.getAsIntegral()));
   bool known = true;
   for (std::size_t i = 1; i < invocation.arguments.size(); ++i) {
     Polynomial p = number(invocation.arguments[i].result, invocation.arguments[i].expr);

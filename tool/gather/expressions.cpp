@@ -163,7 +163,7 @@ Result Walker::evaluate_plain(const Expr* expr) {
 Result Walker::reference(const DeclRefExpr* expr) {
   Result result;
   if (const auto* constant = dyn_cast<EnumConstantDecl>(expr->getDecl())) {
-    result.number = Polynomial(double(constant->getInitVal().getExtValue()));
+    result.number = Polynomial(double(whole_number(constant->getInitVal())));
     return result;
   }
   if (const auto* binding = dyn_cast<BindingDecl>(expr->getDecl())) {
@@ -178,7 +178,7 @@ Result Walker::reference(const DeclRefExpr* expr) {
       variable->getAnyInitializer() && !now_.numbers.contains(path_of(variable)) && !variable->getAnyInitializer()->isValueDependent()) {
     Expr::EvalResult evaluated;
     if (variable->getAnyInitializer()->EvaluateAsRValue(evaluated, unit_.ast)) {
-      if (evaluated.Val.isInt()) result.number = Polynomial(double(evaluated.Val.getInt().getExtValue()));
+      if (evaluated.Val.isInt()) result.number = Polynomial(double(whole_number(evaluated.Val.getInt())));
       if (evaluated.Val.isFloat()) result.number = Polynomial(evaluated.Val.getFloat().convertToDouble());
       if (result.number) return result;
     }

@@ -1,6 +1,7 @@
 #include "gather/polynomial.h"
 
 #include <algorithm>
+#include <cmath>
 
 namespace dextral::gather {
 
@@ -22,8 +23,9 @@ void Polynomial::add(const Monomial& monomial, double coefficient) {
 std::optional<double> Polynomial::constant() const {
   if (!known_) return std::nullopt;
   if (terms_.empty()) return 0.0;
-  if (terms_.size() == 1 && terms_.begin()->first.empty()) return terms_.begin()->second;
-  return std::nullopt;
+  bool one = terms_.size() == 1 && terms_.begin()->first.empty();
+  if (!one || !(std::abs(terms_.begin()->second) < kLargest)) return std::nullopt;
+  return terms_.begin()->second;
 }
 
 std::optional<Atom> Polynomial::atom() const {

@@ -30,6 +30,7 @@ class Polynomial {
  public:
   static constexpr std::size_t kMostTerms = 48;
   static constexpr std::size_t kMostDegree = 6;
+  static constexpr double kLargest = 1e9;  // a constant beyond is not told: it may be no index
 
   Polynomial() = default;  // zero
   explicit Polynomial(double constant);

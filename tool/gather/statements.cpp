@@ -295,7 +295,7 @@ struct Counted {
 std::optional<int> constant(const Expr* expr, ASTContext& context) {
   Expr::EvalResult result;
   if (!expr || expr->isValueDependent() || !expr->EvaluateAsInt(result, context)) return std::nullopt;
-  return int(result.Val.getInt().getExtValue());
+  return int(whole_number(result.Val.getInt()));
 }
 
 const VarDecl* variable_of(const Expr* expr) {

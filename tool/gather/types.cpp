@@ -118,9 +118,9 @@ std::optional<long long> Types::constant_in(const CXXRecordDecl* record, const s
   if (!record) return std::nullopt;
   IdentifierInfo& id = context_.Idents.get(name);
   for (const NamedDecl* decl : record->lookup(&id))
-    if (const auto* constant = dyn_cast<EnumConstantDecl>(decl)) return constant->getInitVal().getExtValue();
+    if (const auto* constant = dyn_cast<EnumConstantDecl>(decl)) return whole_number(constant->getInitVal());
     else if (const auto* variable = dyn_cast<VarDecl>(decl))
-      if (const APValue* value = variable->evaluateValue(); value && value->isInt()) return value->getInt().getExtValue();
+      if (const APValue* value = variable->evaluateValue(); value && value->isInt()) return whole_number(value->getInt());
   return std::nullopt;
 }
 
@@ -139,7 +139,7 @@ TypeFacts Types::by_model(const project::TypeModel& model, const CXXRecordDecl* 
       if (index < 0) return 1;
       if (unsigned(index) >= special->getTemplateArgs().size()) return 0;
       const TemplateArgument& argument = special->getTemplateArgs()[unsigned(index)];
-      return argument.getKind() == TemplateArgument::Integral ? argument.getAsIntegral().getExtValue() : 0;
+      return argument.getKind() == TemplateArgument::Integral ? whole_number(argument.getAsIntegral()) : 0;
     };
     long long rows = given(model.rows_argument), columns = given(model.columns_argument);
     facts.shape = rows > 0 && columns > 0 ? shape_of_dimensions(rows, columns) : Shape::unknown;

@@ -20,6 +20,12 @@ struct TypeFacts {
   const project::TypeModel* model = nullptr;
 };
 
+// The value of a constant, held within what an index can be.
+inline long long whole_number(const llvm::APSInt& value) {
+  if (auto exact = value.tryExtValue()) return *exact;
+  return value.isNegative() ? -(1ll << 40) : 1ll << 40;
+}
+
 class Types {
  public:
   Types(clang::ASTContext& context, const project::ModelTable& models) : context_(context), models_(models) {}

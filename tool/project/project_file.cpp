@@ -143,6 +143,12 @@ class FileReader {
 
   // `slots` are words that stand for frames to come.
   bool phrase_fits(const JsonNode& node, const std::string& text, const std::set<std::string>& slots) {
+    if (std::size_t first = text.find_first_not_of(' ');
+        first != std::string::npos && text.rfind("accept ", first) == first) {
+      check_.problem_inside(node, first, "an acceptance belongs in a comment beside the code",
+                            "write //| " + text.substr(first));
+      return false;
+    }
     auto parsed = phrase::parse(text);
     if (const auto* error = std::get_if<phrase::Error>(&parsed)) {
       check_.problem_inside(

@@ -195,6 +195,7 @@ Result Walker::member_access(const MemberExpr* expr) {
     if (const auto* variable = dyn_cast<VarDecl>(expr->getMemberDecl())) result.place = place_of(variable);
     return result;
   }
+  if (auto modelled = modelled_field(expr, field, base)) return *modelled;
   if (base.place) {
     result.place = member(*base.place, field);
     return result;
@@ -209,6 +210,29 @@ Result Walker::member_access(const MemberExpr* expr) {
     Place place{"t" + std::to_string(++numbers_), unit_.types.bare(expr->getBase()->getType()), nullptr, -1, 0, {}, ""};
     write_object(place, *base.object);
     result.place = member(place, field);
+  }
+  return result;
+}
+
+// A public member that a library model speaks of: the rotation or the origin
+// of a pose.
+std::optional<Result> Walker::modelled_field(const MemberExpr* expr, const FieldDecl* field, const Result& base) {
+  const auto* models = unit_.project.models.functions(Types::name(field));
+  if (!models || models->empty()) return std::nullopt;
+  const std::string& is = models->front().is;
+  if (is != "copy" && is != "translation") return std::nullopt;
+  OperationKind kind = is == "copy" ? OperationKind::copy : OperationKind::translation;
+  Result result;
+  SourceRange range = expr->getSourceRange();
+  Operand whole = operand(base, expr->getBase());
+  if (whole.value == ValueId::none) return result;
+  Value like = unit_.types.value(expr->getType(), brief(range), span(range));
+  result.value = recorder_.value(like.shape, like.rotation, like.text, like.span, like.inverse_form);
+  recorder_.operation(kind, result.value, {whole}, span(range), brief(range));
+  if (base.place && base.place->offset == -1) {
+    View view{*base.place, kind, 0};
+    view.base.type = unit_.types.bare(view.base.type);
+    result.view = view;
   }
   return result;
 }

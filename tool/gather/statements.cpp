@@ -53,7 +53,7 @@ void Walker::enter() {
     bool constant = !input && parameter->getType()->isReferenceType() && parameter->getType().getNonReferenceType().isConstQualified();
     if (!input && !constant) continue;
     Place place = place_of(parameter);
-    ValueId id = read(place, parameter->getSourceRange());
+    ValueId id = read(place, SourceRange(parameter->getLocation()));
     if (id != ValueId::none)
       recorder_.function.declarations.push_back({id, parameter->getNameAsString(), unit_.source.span(parameter->getSourceRange()), recorder_.at(id).rotation});
   }
@@ -104,7 +104,7 @@ void Walker::contract_only() {
     bool out = !pointee.isNull() && !pointee.isConstQualified();
     Value like = unit_.types.value(parameter->getType(), parameter->getNameAsString(), unit_.source.span(parameter->getSourceRange()));
     if (!out) {
-      read(place, parameter->getSourceRange());
+      read(place, SourceRange(parameter->getLocation()));
       f.exits.emplace_back(place.path, Snapshot{place.path, 0, {}});
       continue;
     }

@@ -156,6 +156,7 @@ class Walker {
   Result evaluate_plain(const clang::Expr*);
   Result reference(const clang::DeclRefExpr*);
   Result member_access(const clang::MemberExpr*);
+  std::optional<Result> modelled_field(const clang::MemberExpr*, const clang::FieldDecl*, const Result& base);
   Result subscript(const clang::ArraySubscriptExpr*);
   Result unary(const clang::UnaryOperator*);
   Result binary(const clang::BinaryOperator*);

@@ -191,6 +191,7 @@ class Search {
     if (!maps(shape(operand)) || shape(operand) == Shape::unknown) return;
     auto maker = maker_.find(operand.value);
     if (maker != maker_.end() && (op(maker->second).kind == OperationKind::transpose || op(maker->second).kind == OperationKind::inverse)) return;
+    if (operation.kind == OperationKind::hold && function_.holds.at(operation.item).contract) return;
     bool joined = operation.kind == OperationKind::hold || operation.kind == OperationKind::join;
     add(index, joined ? 4 : 2, {{index, {operation, {i}, {-1, -1}, ""}}}, transposed(operand));
   }

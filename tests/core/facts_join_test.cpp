@@ -53,15 +53,18 @@ TEST(FactsJoin, ABodyWinsOverADeclaration) {
   EXPECT_TRUE(joined.functions[0].body);
 }
 
-TEST(FactsJoin, OfTwoBodiesTheFirstFileThenTheFullerOneStays) {
+TEST(FactsJoin, OfOneBodyInTwoUnitsTheFullerStaysAndTwoBodiesOfOneNameAreToldApart) {
   Facts a = unit("/p/a.cpp"), b = unit("/p/b.cpp"), c = unit("/p/c.cpp");
   a.functions = {function("inline", kHeader, true, 1)};
   b.functions = {function("inline", kHeader, true, 3), function("twice", kSource, true)};
   c.functions = {function("twice", kSource, true, 5)};
   Facts joined = join({c, b, a});
-  ASSERT_EQ(joined.functions.size(), 2u);
+  ASSERT_EQ(joined.functions.size(), 3u);
   EXPECT_EQ(joined.functions[0].operations.size(), 3u);
+  EXPECT_EQ(joined.functions[1].key, "twice");
   EXPECT_EQ(joined.files.name(joined.functions[1].span.file), "/p/b.cpp");
+  EXPECT_EQ(joined.functions[2].key, "twice in /p/c.cpp");
+  EXPECT_EQ(joined.functions[2].operations.size(), 5u);
 }
 
 TEST(FactsJoin, KeepsFieldsComplaintsAndAcceptancesOnce) {

@@ -1,7 +1,9 @@
 // Each file of examples/ gives just the problems that stand in it as comments.
 #include <algorithm>
 #include <fstream>
+#include <iterator>
 
+#include "phrase/phrase.h"
 #include "project/project_file.h"
 #include "support.h"
 
@@ -38,6 +40,36 @@ TEST(Examples, GiveTheProblemsThatTheyName) {
   }
   EXPECT_GE(right, 3);
   EXPECT_GE(wrong, 10);
+}
+
+// The first example of a page.
+std::string shown(const std::string& page) {
+  std::ifstream in(std::string(DEXTRAL_SOURCE) + "/docs/" + page);
+  std::string text(std::istreambuf_iterator<char>(in), {});
+  std::size_t start = text.find("```json\n") + 8;
+  return text.substr(start, text.find("```", start) - start);
+}
+
+TEST(Examples, ThePageOfTheProjectFileShowsARightOne) {
+  Folder folder;
+  folder.put("tools/kit.json", shown("library-models.md"));
+  folder.put("build/compile_commands.json", "[]");
+  std::vector<Problem> problems;
+  std::vector<std::string> notes;
+  ProjectFile file = read_project_file(folder.put("dextral.json", shown("project-file.md")), problems, notes);
+  EXPECT_EQ(lines(problems), Lines{});
+  EXPECT_EQ(notes, Lines{});
+  auto says = [&](const std::string& name) { return phrase::print(named(file, name).value()); };
+  for (const char* name : {"C_bn", "m_C_bn", "C_bn_", "C_bodyned"}) EXPECT_EQ(says(name), "passive ned to body");
+  EXPECT_EQ(says("velocity_n"), "in ned");
+}
+
+TEST(Examples, ThePageOfTheModelsShowsARightOne) {
+  std::vector<Problem> problems;
+  LibraryModel model = read_model("kit.json", shown("library-models.md"), problems);
+  EXPECT_EQ(lines(problems), Lines{});
+  EXPECT_EQ(model.types.size(), 3u);
+  EXPECT_EQ(model.functions.size(), 6u);
 }
 
 }  // namespace

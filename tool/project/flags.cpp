@@ -75,7 +75,7 @@ constexpr const char* kWhole[] = {"-m32",
                                   "-fno-rtti",
                                   "-frtti",
                                   "-fms-extensions",
-                                  "-fgnu89-inline",
+                                 
                                   "-fno-char8_t",
                                   "-fchar8_t",
                                   "-fopenmp-simd",

@@ -326,8 +326,9 @@ bool is_cxx_include(const std::string& line) {
 bool beside_cxx_only(const std::string& file) {
   std::error_code error;
   bool c = false, cxx = false;
-  for (const auto& entry : fs::directory_iterator(fs::path(file).parent_path(), error)) {
-    std::string path = entry.path().string();
+  fs::directory_iterator at(fs::path(file).parent_path(), error), end;
+  for (; !error && at != end; at.increment(error)) {
+    std::string path = at->path().string();
     c = c || has_ending(path, {".c"});
     cxx = cxx || (is_source(path) && !has_ending(path, {".c"})) || (is_header(path) && !has_ending(path, {".h"}));
   }

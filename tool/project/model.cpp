@@ -12,6 +12,7 @@ namespace {
 
 using NodeKind = JsonNode::Kind;
 
+// In the order of Shape.
 const std::vector<std::string>& shape_words() {
   static const std::vector<std::string> words = {"unknown",  "number",     "vector", "row",    "matrix",
                                                  "rotation", "quaternion", "pose",   "object", "container"};

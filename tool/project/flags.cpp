@@ -75,7 +75,7 @@ constexpr const char* kWhole[] = {"-m32",
                                   "-fno-rtti",
                                   "-frtti",
                                   "-fms-extensions",
-                                 
+
                                   "-fno-char8_t",
                                   "-fchar8_t",
                                   "-fopenmp-simd",

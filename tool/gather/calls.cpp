@@ -182,7 +182,12 @@ void Walker::instantiate(const FunctionDecl* function) {
   unit_.sema->InstantiateFunctionDefinition(function->getLocation(), const_cast<FunctionDecl*>(function));
 }
 
-Shape Walker::shape(const Argument& argument) { return unit_.types.of(argument.expr->getType()).shape; }
+// A base that a template was converted to says less than the class itself.
+Shape Walker::shape(const Argument& argument) {
+  Shape shape = unit_.types.of(argument.expr->getType()).shape;
+  if (shape != Shape::object && shape != Shape::unknown) return shape;
+  return unit_.types.of(argument.expr->IgnoreImplicit()->getType()).shape;
+}
 
 Walker::Argument* Walker::argument(Invocation& invocation, int number) {
   int index = invocation.has_object ? number : number - 1;

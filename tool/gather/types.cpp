@@ -53,8 +53,8 @@ bool Types::is_number(QualType type) const {
 int Types::numbers(QualType type) {
   type = type.getCanonicalType().getUnqualifiedType();
   if (type->isRealFloatingType()) return 1;
-  auto [found, fresh] = numbers_.try_emplace(type.getTypePtr(), 0);
-  if (!fresh) return found->second;
+  if (auto found = numbers_.find(type.getTypePtr()); found != numbers_.end()) return found->second;
+  numbers_[type.getTypePtr()] = 0;
   int count = 0;
   if (const auto* array = context_.getAsConstantArrayType(type)) {
     int each = numbers(array->getElementType());
@@ -65,7 +65,9 @@ int Types::numbers(QualType type) {
     if (decl && !decl->isInvalidDecl() && !decl->isDependentContext()) {
       bool whole = true;
       if (const auto* cxx = dyn_cast<CXXRecordDecl>(decl)) {
-        if (cxx->isPolymorphic()) whole = false;
+        // A library's class is no heap of numbers: what holds one is an object.
+        const CXXRecordDecl* found_in = nullptr;
+        if (cxx->isPolymorphic() || model_of(cxx, found_in)) whole = false;
         for (const CXXBaseSpecifier& base : cxx->bases()) {
           const CXXRecordDecl* b = base.getType()->getAsCXXRecordDecl();
           int n = numbers(base.getType());

@@ -252,7 +252,7 @@ class Search {
     for (std::size_t i = 0; i < call.bindings.size(); ++i) {
       Operand argument = operand(call.bindings[i]);
       if (argument.value == ValueId::none || call.bindings[i].formal == "return") continue;
-      if (maps(shape(argument))) {
+      if (maps(shape(argument)) && shape(argument) != Shape::unknown) {
         add(index, 2, {{index, {op(index), {int(i)}, {-1, -1}, ""}}}, transposed(argument));
         drop_argument(index, argument, int(i));
       }

@@ -81,6 +81,7 @@ run::Status lint(const run::Lint& asked) {
   const std::size_t told = findings.size();
   run::Accepted accepted =
       run::accept(std::move(findings), facts.acceptances, run::settled_files(facts, project.units, whole));
+  const std::size_t set_aside = told - accepted.findings.size();
   solution.clashes = std::move(accepted.stale);
   std::ranges::move(judge(solution), std::back_inserter(accepted.findings));
 
@@ -88,7 +89,7 @@ run::Status lint(const run::Lint& asked) {
   // The words, in a fixed order whatever the number of workers.
   tell::sort(accepted.findings, facts.files);
   const tell::Style style{std::filesystem::current_path().string(), asked.fail_on, run::colored(asked)};
-  const tell::Summary summary = summary_of(facts, solution, project.units.size(), unread.size(), told - accepted.findings.size());
+  const tell::Summary summary = summary_of(facts, solution, project.units.size(), unread.size(), set_aside);
   const bool as_json = asked.format == run::Format::json;
   if (!write(asked.output, as_json ? tell::json(accepted.findings, facts.files, summary, style)
                                    : tell::text(accepted.findings, facts.files, summary, style)))

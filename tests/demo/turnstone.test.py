@@ -27,7 +27,7 @@ def line_of(folder, finding):
 
 def main():
     program = os.path.join(os.path.abspath(sys.argv[1]), "dextral")
-    problems, found, known = [], 0, 0
+    problems, found, known, cascades = [], 0, 0, 0
     with tempfile.TemporaryDirectory() as work:
         faults = faulty.write(os.path.join(work, "clean"), "none")
         for f in findings(program, os.path.join(work, "clean")):
@@ -45,9 +45,14 @@ def main():
             elif not right:
                 problems.append("%s: %s is missing; told: %s" %
                                 (fault["id"], fault["rule"], [(f["rule"], f["file"], f["line"], f["sentence"]) for f in told]))
-            elif [f for f in told if f not in right and f["rule"] not in fault.get("also", [])]:
-                problems.append("%s: surplus: %s" % (fault["id"], [(f["rule"], f["line"]) for f in told if f not in right]))
-    print("%d of %d planted faults found, %d known misses" % (found, len(faults), known))
+            else:
+                surplus = [f for f in told if f not in right and f["rule"] not in fault.get("also", [])]
+                marked = fault.get("known surplus", {"rules": []})["rules"]
+                if sorted(f["rule"] for f in surplus) != sorted(marked):
+                    problems.append("%s: surplus: %s, marked as known: %s" %
+                                    (fault["id"], [(f["rule"], f["line"]) for f in surplus], marked))
+                cascades += bool(marked)
+    print("%d of %d planted faults found, %d known misses, %d with known surplus" % (found, len(faults), known, cascades))
     for problem in problems:
         print(problem)
     sys.exit(1 if problems else 0)

@@ -197,8 +197,20 @@ ValueId Walker::from_objects(const std::string& path, const Value& like, bool& f
   return id;
 }
 
+// `none`: deliberately frameless; each reading stands for itself.
+bool Walker::frameless(const Place& place) const {
+  if (!place.decl) return false;
+  std::vector<Said> said = unit_.phrases.of(place.decl);
+  return std::any_of(said.begin(), said.end(), [](const Said& s) { return s.quantity.kind == Kind::none; });
+}
+
 ValueId Walker::read_whole(const Place& place, SourceRange range) {
   if (reads_) reads_->insert(place.path);
+  if (frameless(place)) {
+    QualType type = place.offset == -1 || place.whole.isNull() ? place.type : place.whole;
+    Value like = unit_.types.value(type, brief(range), span(range));
+    return recorder_.value(like.shape, like.rotation, like.text, like.span, like.inverse_form);
+  }
   auto found = now_.groups.find(place.path);
   if (found != now_.groups.end()) {
     ValueId base = settle(place.path);

@@ -149,6 +149,7 @@ class Walker {
   void hold(ValueId, const Place&, clang::SourceRange, bool contract, const std::string& text);
   std::vector<Said> said_of(const Place&) const;
   bool is_literal_group(const Place&) const;
+  bool frameless(const Place&) const;
   void hold_return(ValueId, const Said&, Span, bool contract, const std::string& text);
 
   // expressions.cpp

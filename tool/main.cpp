@@ -2,9 +2,8 @@
 // step before gave; no step calls the next (docs/architecture.md).
 #include <algorithm>
 #include <filesystem>
-#include <fstream>
-#include <iostream>
 #include <iterator>
+#include <optional>
 #include <set>
 #include <type_traits>
 
@@ -14,6 +13,7 @@
 #include "run/accept.h"
 #include "run/answers.h"
 #include "run/commands.h"
+#include "run/deliver.h"
 #include "run/unread.h"
 #include "run/workers.h"
 #include "solve/solve.h"
@@ -23,38 +23,47 @@ namespace dextral {
 
 namespace {
 
-// What is not built yet is refused, never half done.
-bool not_yet(const run::Lint& asked) {
-  return asked.format == run::Format::sarif || asked.write_repairs || asked.dry_run || !asked.known.empty() || !asked.update_known.empty();
-}
-
-tell::Summary summary_of(const Facts& facts, const solve::Solution& solution, std::size_t units, std::size_t unread, std::size_t accepted) {
-  tell::Summary summary{units - unread, unread, {}, solution.rotations, solution.rotations_known, accepted};
+tell::Summary summary_of(const Facts& facts, const solve::Solution& solution, std::size_t units,
+                         const std::vector<run::Unread>& unread) {
+  tell::Summary summary{units - unread.size(), unread.size(), {}, solution.rotations, solution.rotations_known};
   std::set<std::string> missing;
   for (const Complaint& complaint : facts.complaints)
     if (complaint.kind == ComplaintKind::missing_header) missing.insert(complaint.wrong);
   summary.missing_headers.assign(missing.begin(), missing.end());
+  for (const run::Unread& unit : unread) summary.unread.push_back({unit.unit, unit.lost, unit.why});
   return summary;
 }
 
-bool write(const std::string& path, const std::string& text) {
-  if (path.empty()) return bool(std::cout << text);
-  std::ofstream out(path, std::ios::binary);
-  if (out << text) return true;
-  std::cerr << "dextral: " << path << " cannot be written\n";
-  return false;
+std::vector<Certainty> certainties(const std::vector<Finding>& findings) {
+  std::vector<Certainty> all;
+  for (const Finding& finding : findings) all.push_back(finding.certainty);
+  return all;
+}
+
+// Paths for people are told from where they stand, those for programs from the
+// project's root.
+std::string report(const run::Lint& asked, const std::vector<Finding>& findings, const FileTable& files,
+                   const tell::Summary& summary, const std::string& root) {
+  const std::string from = asked.format == run::Format::text ? std::filesystem::current_path().string() : root;
+  const tell::Style style{from, asked.fail_on, run::colored(asked), DEXTRAL_VERSION};
+  switch (asked.format) {
+    case run::Format::json:
+      return tell::json(findings, files, summary, style);
+    case run::Format::sarif:
+      return tell::sarif(findings, files, summary, style);
+    case run::Format::text:
+      break;
+  }
+  return tell::text(findings, files, summary, style);
 }
 
 run::Status lint(const run::Lint& asked) {
-  if (not_yet(asked)) {
-    std::cerr << "dextral: --format sarif, --known, --update-known, --write-repairs and --dry-run do not work yet\n";
-    return run::Status::wrong_call;
-  }
-
   // What to read, how it compiles, what it declares. Where the project file is
   // wrong, all that follows would rest on guesses: it ends here.
   const project::Project project = project::read(asked.request);
   if (!run::tell_project(project)) return run::Status::wrong_call;
+  std::optional<std::vector<tell::Known>> known = run::read_known(asked);
+  if (!known) return run::Status::wrong_call;
 
   // Each file in a worker process, since Clang may crash or hang on any of them
   // and must not take the others along.
@@ -77,27 +86,31 @@ run::Status lint(const run::Lint& asked) {
 
   // `accept RULE` names rules, so it is met after judging; what accepted
   // nothing is itself a finding.
-  const bool whole = asked.request.paths.empty();
-  const std::size_t told = findings.size();
-  run::Accepted accepted =
-      run::accept(std::move(findings), facts.acceptances, run::settled_files(facts, project.units, whole));
-  const std::size_t set_aside = told - accepted.findings.size();
+  const std::set<FileId> settled = run::settled_files(facts, project.units, asked.request.paths.empty());
+  run::Accepted accepted = run::accept(std::move(findings), facts.acceptances, settled);
   solution.clashes = std::move(accepted.stale);
   std::ranges::move(judge(solution), std::back_inserter(accepted.findings));
 
-  std::erase_if(accepted.findings, [&](const Finding& finding) { return !run::shows(asked, finding.certainty); });
-  // The words, in a fixed order whatever the number of workers.
+  // A fixed order, whatever the number of workers; then what the ledger knows
+  // is set aside.
   tell::sort(accepted.findings, facts.files);
-  const tell::Style style{std::filesystem::current_path().string(), asked.fail_on, run::colored(asked)};
-  const tell::Summary summary = summary_of(facts, solution, project.units.size(), unread.size(), set_aside);
-  const bool as_json = asked.format == run::Format::json;
-  if (!write(asked.output, as_json ? tell::json(accepted.findings, facts.files, summary, style)
-                                   : tell::text(accepted.findings, facts.files, summary, style)))
-    return run::Status::wrong_call;
-  for (const run::Unread& unit : unread) std::cerr << text(unit) << "\n";
-  std::vector<Certainty> certainties;
-  for (const Finding& finding : accepted.findings) certainties.push_back(finding.certainty);
-  return run::status(asked, unread.empty(), certainties);
+  const std::string root = run::told_root(project);
+  std::optional<tell::SetAside> told =
+      run::settle(asked, std::move(accepted.findings), std::move(*known), facts.files, root, settled);
+  if (!told) return run::Status::wrong_call;
+  std::erase_if(told->fresh, [&](const Finding& finding) { return !run::shows(asked, finding.certainty); });
+
+  // The words, and what is left behind.
+  tell::Summary summary = summary_of(facts, solution, project.units.size(), unread);
+  summary.accepted = accepted.set_aside.size();
+  summary.known = told->known;
+  summary.gone = told->gone;
+  const std::string words = asked.dry_run ? run::repairs_as_diff(told->fresh, facts.files, project)
+                                          : report(asked, told->fresh, facts.files, summary, root);
+  if (asked.dry_run || !asked.output.empty()) run::tell_unread(unread);
+  const bool delivered = run::deliver(asked, words);
+  if (!delivered || !run::write_repairs(asked, told->fresh, facts.files, project)) return run::Status::wrong_call;
+  return run::status(asked, unread.empty(), certainties(told->fresh));
 }
 
 }  // namespace

@@ -60,7 +60,7 @@ Status answer(const ShowFacts& asked) {
   if (!tell_project(project)) return Status::wrong_call;
   std::vector<Facts> units = read_all(project.units, reader(project), asked.limits);
   const std::vector<Unread> not_read = unread(units);
-  for (const Unread& unit : not_read) std::cerr << text(unit) << "\n";
+  tell_unread(not_read);
   const Facts facts = join(std::move(units));
   std::vector<const Function*> functions;
   for (const Function& function : facts.functions) functions.push_back(&function);

@@ -1,6 +1,7 @@
 #include "run/unread.h"
 
 #include <algorithm>
+#include <iostream>
 
 #include "run/accept.h"
 
@@ -44,6 +45,10 @@ std::vector<Unread> unread(const std::vector<Facts>& units) {
 
 std::string text(const Unread& unread) {
   return unread.unit + ": " + (unread.lost ? "not read: " : "read in part: ") + unread.why;
+}
+
+void tell_unread(const std::vector<Unread>& units) {
+  for (const Unread& unit : units) std::cerr << text(unit) << "\n";
 }
 
 }  // namespace dextral::run

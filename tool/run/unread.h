@@ -22,5 +22,6 @@ struct Unread {
 std::vector<Unread> unread(const std::vector<Facts>&);
 
 std::string text(const Unread&);
+void tell_unread(const std::vector<Unread>&);  // on standard error
 
 }  // namespace dextral::run

@@ -9,7 +9,10 @@
 namespace dextral::words {
 
 inline std::string quoted(const std::string& code) { return "`" + code + "`"; }
-inline std::string frame(const Frame& f) { return f.known() ? text(f) : "an unknown frame"; }
+inline std::string frame(const Frame& f) {
+  if (!f.known()) return "an unknown frame";
+  return f.own && !f.owner.empty() ? text(f) + " of " + quoted(f.owner) : text(f);
+}
 
 inline bool first_repair(const solve::Clash& clash, solve::RepairKind kind) {
   return !clash.repairs.empty() && clash.repairs[0].kind == kind;

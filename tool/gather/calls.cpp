@@ -754,6 +754,8 @@ Result Walker::called(Invocation& invocation) {
   Call call;
   call.callee = key_of(callee);
   call.name = callee->getNameAsString();
+  if (const auto* method = dyn_cast<CXXMethodDecl>(callee); method && method->getParent()->isLambda() && invocation.has_object)
+    call.name = brief(invocation.arguments[0].expr->getSourceRange());
   if (const auto* method = dyn_cast<CXXMethodDecl>(callee)) {
     const auto* member = dyn_cast<CXXMemberCallExpr>(invocation.expr);
     const auto* access = member ? dyn_cast<MemberExpr>(member->getCallee()->IgnoreParens()) : nullptr;

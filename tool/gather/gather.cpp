@@ -69,7 +69,7 @@ Facts gather(const project::Unit& unit, const project::Project& project, const s
   facts.unit = unit.file;
   facts.read = parse(unit, project, facts, [&](ASTContext& ast, Sema& sema) {
     Source source(ast.getSourceManager(), ast.getLangOpts(), facts.files);
-    Types types(ast, project.models);
+    Types types(ast, sema, project.models);
     Phrases phrases(ast, source, project, rule_ids, facts);
     UnitContext context{ast, &sema, source, types, phrases, project, facts, {}, {}};
     walk(context);

@@ -109,7 +109,7 @@ class Attacher {
         continue;
       }
       const Quantity& quantity = std::get<Quantity>(item.says);
-      check_frames(quantity, where);
+      if (!phrases_.frames_known(quantity, where)) continue;
       Said said{quantity, dextral::Source::declared, where, phrase::print(quantity)};
       if (item.names.empty()) bare(comment, said);
       else named(comment, item.names, said);
@@ -133,15 +133,6 @@ class Attacher {
 
   void complain(ComplaintKind kind, Span where, std::string wrong, std::string message, std::string nearest) {
     phrases_.facts_.complaints.push_back({kind, where, std::move(wrong), std::move(message), std::move(nearest)});
-  }
-
-  void check_frames(const Quantity& quantity, Span where) {
-    const FrameCatalogue& frames = phrases_.project_.file.frames;
-    for (const Frame& frame : phrase::mentioned(quantity)) {
-      if (frame.variable || frame.name.empty() || frames.find(frame.name)) continue;
-      if (auto near = frames.nearest(frame.name))
-        complain(ComplaintKind::unknown_frame, where, frame.name, "no frame of this name is declared", *near);
-    }
   }
 
   const Head* head(const BarComment& comment) const {
@@ -296,6 +287,7 @@ void Phrases::attach() {
       facts_.complaints.push_back({ComplaintKind::phrase, where, error->wrong, error->message, error->nearest});
       continue;
     }
+    if (!frames_known(std::get<Quantity>(parsed), where)) continue;
     Said said{std::get<Quantity>(parsed), dextral::Source::declared, where, phrase::print(std::get<Quantity>(parsed))};
     (isa<FunctionDecl>(decl) ? returned_ : said_)[decl->getLocation().getRawEncoding()].push_back(said);
   }
@@ -304,6 +296,20 @@ void Phrases::attach() {
     Attacher attacher(*this, inventory, file);
     for (const BarComment& comment : bar_comments(file, manager, context_.getLangOpts())) attacher.attach(comment);
   }
+}
+
+// A misspelt frame is told, and its phrase says nothing: one fault, one finding.
+bool Phrases::frames_known(const Quantity& quantity, Span where) const {
+  const project::ProjectFile& file = project_.file;
+  bool known = true;
+  for (const Frame& frame : phrase::mentioned(quantity)) {
+    if (frame.variable || frame.name.empty() || file.frames.find(frame.name)) continue;
+    const auto near = file.frames.nearest(frame.name);
+    if (!near && !file.only_declared_frames) continue;
+    facts_.complaints.push_back({ComplaintKind::unknown_frame, where, frame.name, "no frame of this name is declared", near.value_or("")});
+    known = false;
+  }
+  return known;
 }
 
 std::vector<Said> Phrases::at(SourceLocation location) const {

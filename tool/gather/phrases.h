@@ -53,6 +53,7 @@ class Phrases {
   friend class Attacher;
   using Key = unsigned;  // raw location of the declared name
   std::vector<Said> at(clang::SourceLocation) const;
+  bool frames_known(const Quantity&, Span where) const;
 
   clang::ASTContext& context_;
   const Source& source_;

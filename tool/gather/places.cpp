@@ -82,7 +82,11 @@ Place Walker::place_of(const VarDecl* decl) {
     if (!unit_.phrases.of(decl).empty()) place.decl = decl;
     return place;
   }
-  Place place{path_of(decl), decl->getType(), decl, -1, 0, {}, ""};
+  // A parameter `double v[3]` is a pointer to Clang and three numbers to its author.
+  QualType type = decl->getType();
+  if (const auto* parameter = dyn_cast<ParmVarDecl>(decl))
+    if (QualType written = parameter->getOriginalType(); unit_.ast.getAsConstantArrayType(written)) type = written;
+  Place place{path_of(decl), type, decl, -1, 0, {}, ""};
   if (auto slot = unit_.phrases.component(decl)) {
     place.path = (isa<ParmVarDecl>(decl) && depth_ == 0 ? "q" : "l") + slot->group;
     place.offset = slot->index;
@@ -95,7 +99,9 @@ std::optional<Place> Walker::member(const Place& base, const FieldDecl* field) {
   TypeFacts facts = unit_.types.of(unit_.types.bare(base.type));
   Place place = base;
   place.type = field->getType();
-  if (facts.group && !facts.model) {
+  const std::optional<Slot3> slot = unit_.phrases.component(field);
+  // A record of nothing but numbers is one group, unless its fields form groups of their own.
+  if (facts.group && !facts.model && !(slot && slot->count != facts.numbers)) {
     int index = unit_.types.index(field);
     if (index < 0) return std::nullopt;
     if (place.whole.isNull()) place.whole = base.type;
@@ -107,7 +113,7 @@ std::optional<Place> Walker::member(const Place& base, const FieldDecl* field) {
   place.owner = base.path;
   place.offset = -1;
   place.whole = {};
-  if (auto slot = unit_.phrases.component(field)) {
+  if (slot) {
     place.path = base.path + "." + slot->group;
     place.offset = slot->index;
     place.size = slot->count;
@@ -150,13 +156,31 @@ std::uint32_t Walker::epoch(const std::string& path) const {
 }
 
 std::vector<Said> Walker::said_of(const Place& place) const {
-  if (!place.decl) return {};
-  std::vector<Said> said = unit_.phrases.of(place.decl);
-  for (Said& more : unit_.phrases.of_type(place.decl->getType())) said.push_back(std::move(more));
-  if (!said.empty()) return said;
+  std::vector<Said> said;
+  if (place.decl) said = unit_.phrases.of(place.decl);
+  if (place.decl)
+    for (Said& more : unit_.phrases.of_type(place.decl->getType())) said.push_back(std::move(more));
+  if (said.empty()) said = said_of_fields(place);
+  if (!said.empty() || !place.decl) return said;
   if (auto quantity = project::named(unit_.project.file, place.decl->getNameAsString()))
     said.push_back({*quantity, dextral::Source::named, unit_.source.span(place.decl->getLocation()), ""});
   return said;
+}
+
+// `float vx, vy, vz;  //| in ned`: what the fields of a record of numbers say
+// with one voice is said of the record.
+std::vector<Said> Walker::said_of_fields(const Place& place) const {
+  const QualType type = place.whole.isNull() ? place.type : place.whole;
+  const auto* record = type.isNull() ? nullptr : unit_.types.bare(type)->getAsRecordDecl();
+  const TypeFacts facts = record ? unit_.types.of(unit_.types.bare(type)) : TypeFacts{};
+  if (!facts.group || facts.model) return {};
+  std::vector<Said> all;
+  for (const FieldDecl* field : record->fields()) {
+    std::vector<Said> said = unit_.phrases.of(field);
+    if (said.size() != 1 || (!all.empty() && said[0].text != all[0].text)) return {};
+    all = std::move(said);
+  }
+  return all;
 }
 
 void Walker::hold(ValueId id, const Place& place, SourceRange range, bool contract, const std::string& text) {
@@ -168,7 +192,7 @@ void Walker::hold(ValueId id, const Place& place, SourceRange range, bool contra
     if (shape == Shape::number || shape == Shape::object || shape == Shape::container) continue;
     if (said.source == dextral::Source::named && frames.columns.known() == (shape == Shape::vector)) continue;
     if (frames.columns.known() && shape == Shape::vector) continue;
-    Hold hold{owned(said.quantity, place.owner), said.source, said.text, said.span, place.decl->getNameAsString(),
+    Hold hold{owned(said.quantity, place.owner), said.source, said.text, said.span, place.decl ? place.decl->getNameAsString() : text,
               contract && said.source == dextral::Source::declared, -1, ""};
     recorder_.hold(id, std::move(hold), span(range), text);
   }

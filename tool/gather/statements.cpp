@@ -51,8 +51,8 @@ void Walker::enter() {
     if (!facts.group && facts.shape != Shape::pose && facts.shape != Shape::quaternion) continue;
     bool input = !parameter->getType()->isPointerType() && !parameter->getType()->isLValueReferenceType();
     bool constant = !input && parameter->getType()->isReferenceType() && parameter->getType().getNonReferenceType().isConstQualified();
-    if (!input && !constant) continue;
     Place place = place_of(parameter);
+    if (!input && !constant) continue;
     ValueId id = read(place, SourceRange(parameter->getLocation()));
     if (id != ValueId::none)
       recorder_.function.declarations.push_back({id, parameter->getNameAsString(), unit_.source.span(parameter->getSourceRange()), recorder_.at(id).rotation});

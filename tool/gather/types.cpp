@@ -202,6 +202,11 @@ TypeFacts Types::compute(QualType type) {
     return of(pointee);
   }
   if (const CXXRecordDecl* record = type->getAsCXXRecordDecl()) {
+    // What is only declared, as the class of `const Vector3d&`, is instantiated now.
+    if (isa<ClassTemplateSpecializationDecl>(record) && !record->getDefinition()) {
+      sema_.isCompleteType(record->getLocation(), type);
+      if (const CXXRecordDecl* made = record->getDefinition()) record = made;
+    }
     const CXXRecordDecl* found = nullptr;
     if (const project::TypeModel* model = model_of(record, found)) return by_model(*model, found, type);
   }

@@ -28,7 +28,8 @@ inline long long whole_number(const llvm::APSInt& value) {
 
 class Types {
  public:
-  Types(clang::ASTContext& context, const project::ModelTable& models) : context_(context), models_(models) {}
+  Types(clang::ASTContext& context, clang::Sema& sema, const project::ModelTable& models)
+      : context_(context), sema_(sema), models_(models) {}
 
   TypeFacts of(clang::QualType);
   Value value(clang::QualType, std::string text, Span);
@@ -51,6 +52,7 @@ class Types {
   TypeFacts by_model(const project::TypeModel&, const clang::CXXRecordDecl*, clang::QualType);
 
   clang::ASTContext& context_;
+  clang::Sema& sema_;
   const project::ModelTable& models_;
   llvm::DenseMap<const clang::Type*, TypeFacts> cache_;
   llvm::DenseMap<const clang::Type*, int> numbers_;

@@ -61,6 +61,19 @@ std::string operand_text(const Function& function, const Operation& op, int oper
   return op.operands.at(std::size_t(operand)).text;
 }
 
+// `own body` of which object, as the code names it: "p0.imu" -> "state.imu".
+Frame of_object(const Function& function, Frame frame) {
+  if (!frame.own) return frame;
+  const std::size_t end = std::min(frame.owner.find_first_of(".["), frame.owner.size());
+  const std::string root = frame.owner.substr(0, end), rest = frame.owner.substr(end);
+  const bool formal = root.size() > 1 && root[0] == 'p' && std::isdigit(static_cast<unsigned char>(root[1]));
+  const std::size_t index = formal ? std::stoul(root.substr(1)) : std::string::npos;
+  if (index < function.parameter_names.size()) frame.owner = function.parameter_names[index] + rest;
+  else if (root == "this") frame.owner = rest.empty() ? "this" : rest.substr(1);
+  else frame.owner.clear();
+  return frame;
+}
+
 bool only_declared(const std::vector<Reason>& proof) {
   return std::all_of(proof.begin(), proof.end(), [](const Reason& r) { return r.kind == ReasonKind::declared; });
 }
@@ -107,8 +120,8 @@ Clash clash_of(const Function& function, Sheeted& sheeted, const Conflict& confl
   clash.operation = op.kind;
   clash.subject = operand_text(function, op, conflict.left_operand);
   clash.object = operand_text(function, op, conflict.right_operand);
-  if (const Frame* frame = sheet.frame(conflict.left)) clash.left = *frame;
-  if (const Frame* frame = sheet.frame(conflict.right)) clash.right = *frame;
+  if (const Frame* frame = sheet.frame(conflict.left)) clash.left = of_object(function, *frame);
+  if (const Frame* frame = sheet.frame(conflict.right)) clash.right = of_object(function, *frame);
   clash.certainty = conflict.certainty;
   auto prove = [&](NodeId side) {
     std::vector<Edge> chain = sheet.path(side, sheet.constant_of(side));

@@ -56,12 +56,14 @@ class Search {
     std::vector<Success> found;
     for (std::size_t i = 0; i < candidates_.size() && i < kMost; ++i)
       if (auto left = conflicts_left(candidates_[i].alteration)) found.push_back({*left, candidates_[i].preference, i});
-    Culprit culprit{sheeted_.conflicts.front().operation, {}};
+    Culprit culprit{sheeted_.conflicts.front().operation, {}, {}};
     if (found.empty()) return culprit;
     std::sort(found.begin(), found.end(), [](const Success& a, const Success& b) {
       return std::tie(a.left, a.preference, a.order) < std::tie(b.left, b.preference, b.order);
     });
     culprit.operation = candidates_[found.front().order].operation;
+    for (const auto& [altered, edit] : candidates_[found.front().order].alteration)
+      if (conflicting_.contains(altered)) culprit.cleared.insert(altered);
     for (const Success& success : found) {
       if (success.left != found.front().left || culprit.repairs.size() == 3) break;
       const Repair& repair = candidates_[success.order].repair;
@@ -112,6 +114,9 @@ class Search {
       swap(index);
       swap_across(index);
       two_sided(index);
+      other_sides(index);
+      for (std::uint32_t i = index + 1; i < function_.operations.size(); ++i)
+        if (op(i).kind == OperationKind::product && takes(op(i), operation.result)) other_sides(i);
     }
     if (operation.kind == OperationKind::transpose || operation.kind == OperationKind::inverse) return drop(index);
     if (operation.kind == OperationKind::call) return propose_call(index);
@@ -173,14 +178,55 @@ class Search {
     add(index, -1, {{index, {edited, {}, {-1, -1}, ""}}}, repair);
   }
 
+  static bool takes(const Operation& operation, ValueId id) {
+    return std::any_of(operation.operands.begin(), operation.operands.end(), [&](const Operand& o) { return o.value == id; });
+  }
+
+  // (C^T * J) * C -> (C * J) * C^T: the inverse stands on the wrong side.
+  void other_sides(std::uint32_t index) {
+    const Operation& outer = op(index);
+    for (int side : {0, 1}) {
+      auto maker = maker_.find(outer.operands[std::size_t(side)].value);
+      if (maker == maker_.end() || op(maker->second).kind != OperationKind::product) continue;
+      const Operand& far = outer.operands[std::size_t(1 - side)];
+      const Operand& near = op(maker->second).operands[std::size_t(side)];
+      if (!plain_of(far, near)) continue;
+      Repair repair;
+      repair.kind = RepairKind::swap;
+      exchange_text(repair, side == 0 ? near : far, side == 0 ? far : near);
+      add(index, -1, {{index, {outer, {1 - side}, {-1, -1}, ""}}, {maker->second, {op(maker->second), {side}, {-1, -1}, ""}}},
+          repair);
+    }
+  }
+
+  // Of two operands, the one of which the other is the inverse; or none.
+  const Operand* plain_of(const Operand& a, const Operand& b) const {
+    for (const auto& [x, y] : {std::pair{&a, &b}, std::pair{&b, &a}}) {
+      auto maker = maker_.find(y->value);
+      if (maker == maker_.end()) continue;
+      const Operation& inverse = op(maker->second);
+      const bool inverts = inverse.kind == OperationKind::transpose || inverse.kind == OperationKind::inverse;
+      if (inverts && inverse.operands[0].value == x->value) return x;
+    }
+    return nullptr;
+  }
+
   bool rotates(ValueId id) const { return value(id).rotation || value(id).shape == Shape::quaternion; }
+
+  // A transpose inverts rotations only: of a `linear` map no edit is offered.
+  bool is_linear(ValueId id) const {
+    return std::any_of(function_.operations.begin(), function_.operations.end(), [&](const Operation& operation) {
+      return operation.kind == OperationKind::hold && operation.operands[0].value == id &&
+             function_.holds.at(operation.item).quantity.kind == Kind::linear;
+    });
+  }
 
   Repair transposed(const Operand& operand) const {
     Repair repair;
     repair.kind = RepairKind::transpose;
     repair.subject = operand.text;
     repair.rotation = rotates(operand.value);
-    repair.other = inverted(value(operand.value).inverse_form, operand.text);
+    if (!is_linear(operand.value)) repair.other = inverted(value(operand.value).inverse_form, operand.text);
     if (!repair.other.empty() && operand.span.valid()) repair.edits = {{operand.span, repair.other}};
     return repair;
   }

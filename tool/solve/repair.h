@@ -17,6 +17,7 @@ namespace dextral::solve {
 
 struct Culprit {
   std::uint32_t operation = 0;
+  std::set<std::uint32_t> cleared;  // other operations whose conflicts the first repair removes
   std::vector<Repair> repairs;  // best first
 };
 

@@ -131,6 +131,7 @@ class Program {
       Culprit culprit = find_culprit(function, setting(), removed, sheeted);
       record(function, culprit, removed, sheeted);
       removed.insert(culprit.operation);
+      removed.insert(culprit.cleared.begin(), culprit.cleared.end());
       sheeted = sheet_of(function, setting(), removed);
     }
     solution_.values[index] = known(function, sheeted);

@@ -1,4 +1,5 @@
-// Positions are chained over points that do not meet.
+// Positions are chained over points that do not meet: a sum for a difference, a
+// chain the wrong way round, a link too many or too few.
 #include "rules/support/words.h"
 
 namespace dextral {
@@ -12,7 +13,7 @@ namespace {
 bool fits(const Clash& clash) { return clash.kind == solve::ClashKind::points; }
 
 std::string sentence(const Clash& clash) {
-  return quoted(clash.subject) + " ends at " + frame(clash.left) + ", " + quoted(clash.object) + " begins at " + frame(clash.right);
+  return quoted(clash.subject) + " goes " + clash.left_points + ", " + quoted(clash.object) + " is to go " + clash.right_points;
 }
 
 }  // namespace

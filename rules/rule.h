@@ -27,7 +27,7 @@ struct Finding {
   std::string function;
   std::string sentence;  // one plain sentence, no final period
   std::vector<Reason> left, right;  // the two sides of the chain, from the place outwards
-  Frame left_frame, right_frame;
+  std::string left_says, right_says;  // what each side comes to: "ned", "from hull to mast"; or empty
   std::vector<solve::Repair> repairs;
   std::optional<Witness> witness;
 };

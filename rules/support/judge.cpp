@@ -5,6 +5,12 @@
 
 namespace dextral {
 
+namespace {
+
+std::string says(const Frame& frame, const std::string& points) { return frame.known() ? text(frame) : points; }
+
+}  // namespace
+
 std::vector<Finding> judge(const solve::Solution& solution) {
   std::vector<const Rule*> order;
   for (const Rule& rule : rules()) order.push_back(&rule);
@@ -21,8 +27,8 @@ std::vector<Finding> judge(const solve::Solution& solution) {
     finding.sentence = (*rule)->sentence(clash);
     finding.left = clash.left_proof;
     finding.right = clash.right_proof;
-    finding.left_frame = clash.left;
-    finding.right_frame = clash.right;
+    finding.left_says = says(clash.left, clash.left_points);
+    finding.right_says = says(clash.right, clash.right_points);
     finding.repairs = clash.repairs;
     if ((*rule)->witness) finding.witness = (*rule)->witness(clash);
     findings.push_back(std::move(finding));

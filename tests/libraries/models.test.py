@@ -160,7 +160,7 @@ class Call:
                 f".turned = {ints(e.get('transposed', []))}, .kinds = {ints(map(json.dumps, self.kinds()))}, "
                 f".order = {text('order')}, .sequence = {text('sequence')}, .sense = {text('sense')}, "
                 f".turning = {text('turning')}, .unit = {text('unit')}, .base = {e.get('base', 0)}, "
-                f".index = {e.get('index', -1)}, .angles = {ints(e.get('angles', []))}, "
+                f".index = {e.get('index', -1)}, .factor = {e.get('factor', 0)}, .angles = {ints(e.get('angles', []))}, "
                 f".interpolates = {truth(interpolates)}, .conjugate = {truth(self.check.get('conjugate'))}, "
                 f".tolerance = {tolerance}}}")
 

@@ -188,6 +188,7 @@ struct Claim {
   std::vector<std::string> kinds;  // of argument 0, 1, ...; "" where there is none
   std::string order, sequence, sense, turning, unit;
   int base = 0, index = -1;
+  int factor = 0;  // of a copy; 0: any
   std::vector<int> angles;
   bool interpolates = false;
   bool conjugate = false;  // a quaternion object of the library stands for q* v q
@@ -366,7 +367,9 @@ inline bool formula_holds(const Claim& c, const Call& call, Random& random, int 
 inline bool copies(const Claim& c, const Call& call, Random& random) {
   for (int trial = 0; trial < 4; ++trial) {
     const Things a = arguments(c, random);
-    if (!copied(operands(c, a).at(0), call(a), c.tolerance)) return false;
+    const Thing from = operands(c, a).at(0), to = call(a);
+    if (!copied(from, to, c.tolerance)) return false;
+    if (c.factor && distance(to.vector, scaled(c.factor, from.vector)) > c.tolerance * 100) return false;
   }
   return true;
 }

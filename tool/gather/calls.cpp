@@ -302,6 +302,7 @@ Result Walker::made(OperationKind kind, Invocation& invocation, std::vector<Oper
   ValueId id = recorder_.value(like.shape, like.rotation, like.text, like.span, like.inverse_form);
   Operation& op = recorder_.operation(kind, id, operands, where, text);
   if (line >= 0) op.numbers = {line};
+  if (kind == OperationKind::copy && model.factor) op.numbers = {model.factor};
   if (model.into != project::kReturn) {
     store(invocation, model.into, id, false);
     if (target && model.also_returned) return target->result;

@@ -61,6 +61,7 @@ class Assembly {
       if (!p.known()) return opaque_or_partial();
     Classes classes = split(group_.elements);
     std::vector<Operand> parts;
+    std::vector<int> signs;
     for (const auto& [key, entries] : classes) {
       if (key.values.empty()) {
         if (size_ == 9 && classes.size() > 1) return opaque();
@@ -68,12 +69,14 @@ class Assembly {
       }
       ValueId part = pattern(key, entries);
       if (part == ValueId::none) return classes.size() > 1 || size_ == 9 ? opaque_or_partial() : columns_or_opaque(classes);
-      if (std::none_of(parts.begin(), parts.end(), [&](const Operand& o) { return o.value == part; }))
+      if (std::none_of(parts.begin(), parts.end(), [&](const Operand& o) { return o.value == part; })) {
         parts.push_back({part, {}, recorder_.at(part).text});
+        signs.push_back(key.scale.empty() ? sign_of(entries) : 0);
+      }
     }
     if (parts.empty()) return opaque();
     ValueId result = opaque();
-    recorder_.operation(parts.size() > 1 ? OperationKind::sum : OperationKind::copy, result, parts, group_.span, group_.text);
+    recorder_.operation(parts.size() > 1 ? OperationKind::sum : OperationKind::copy, result, parts, group_.span, group_.text).numbers = signs;
     return result;
   }
 
@@ -92,6 +95,13 @@ class Assembly {
     ValueId result = recorder_.value(recorder_.at(id).shape, recorder_.at(id).rotation, recorder_.at(id).text, group_.span);
     recorder_.operation(OperationKind::transpose, result, {operand(id)}, group_.span, group_.text);
     return result;
+  }
+
+  // 1 or -1 where a whole vector stands with that factor; else 0.
+  static int sign_of(const Class& entries) {
+    const double factor = entries[0].coefficient;
+    const bool one = std::all_of(entries.begin(), entries.end(), [&](const Entry& e) { return e.coefficient == factor; });
+    return one && std::abs(factor) == 1 ? int(factor) : 0;
   }
 
   // Where some numbers are not understood or come from elsewhere (clamped, set
@@ -120,15 +130,17 @@ class Assembly {
     if (size_ != 9) return result;
     for (bool columns : {true, false}) {
       std::vector<ValueId> vectors(3, ValueId::none);
+      bool whole = true;
       for (int i = 0; i < 3; ++i)
         for (int j = 0; j < 3; ++j) {
           auto atom = group_.elements[std::size_t(3 * i + j)].atom();
           int line = columns ? j : i, component = columns ? i : j;
-          if (!atom || atom->opaque() || int(atom->index) != component || length(atom->value) == 9) return_none(vectors);
-          else if (component == 0) vectors[std::size_t(line)] = atom->value;
-          else if (vectors[std::size_t(line)] != atom->value) return_none(vectors);
+          const bool plain = atom && !atom->opaque() && int(atom->index) == component && length(atom->value) != 9;
+          ValueId& vector = vectors[std::size_t(line)];
+          if (plain && component == 0 && whole) vector = atom->value;
+          whole = whole && plain && vector == atom->value;
         }
-      if (std::find(vectors.begin(), vectors.end(), ValueId::none) != vectors.end()) continue;
+      if (!whole) continue;
       for (int line = 0; line < 3; ++line) {
         Operation& op = recorder_.operation(columns ? OperationKind::column : OperationKind::row,
                                             vectors[std::size_t(line)], {{result, {}, group_.like.text}}, group_.span, group_.text);
@@ -138,8 +150,6 @@ class Assembly {
     }
     return result;
   }
-
-  static void return_none(std::vector<ValueId>& vectors) { vectors.assign(3, ValueId::none), vectors[0] = ValueId::none; }
 
   int length(ValueId id) {
     Shape shape = recorder_.at(id).shape;

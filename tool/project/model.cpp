@@ -191,7 +191,7 @@ class ModelReader {
 
   void function(const JsonNode& node) {
     check_.keys(node, {"name", "given", "object", "is", "of", "transposed", "into", "also returned", "order", "base",
-                       "index", "sequence", "sense", "turning", "unit", "angles", "about"});
+                       "factor", "index", "sequence", "sense", "turning", "unit", "angles", "about"});
     const Arity* arity = operation(node);
     FunctionModel function;
     function.given = given(node);
@@ -253,6 +253,7 @@ class ModelReader {
     function.order = word(node, "order", {"rows", "columns", "xyzw", "wxyz"});
     function.base = number(node, "base", 0, 0);
     function.index = number(node, "index", 0, -1);
+    function.factor = factor(node);
     function.sense = word(node, "sense", {"active", "passive"});
     function.turning = word(node, "turning", {"moving", "fixed"});
     function.unit = word(node, "unit", {"rad", "deg"});
@@ -267,6 +268,14 @@ class ModelReader {
                      "the sequence has " + std::to_string(function.sequence.size()) + " axes, and " +
                          std::to_string(count) + " angles are listed",
                      "list one angle for each axis, or one vector");
+  }
+
+  int factor(const JsonNode& node) {
+    const JsonNode* found = node.find("factor");
+    if (!found) return 0;
+    if (found->kind == NodeKind::number && std::abs(found->number) == 1) return int(found->number);
+    check_.problem(*found, "a factor is 1 or -1", "leave it out where the copy is scaled or normalised");
+    return 0;
   }
 
   std::string sequence(const JsonNode& node) {

@@ -49,6 +49,7 @@ struct FunctionModel {
   bool also_returned = false;   // written in place and returned too
   std::string order;            // of elements: "rows", "columns", "xyzw", "wxyz"
   int base = 0;                 // first index of an element accessor
+  int factor = 0;               // of copy: 1 or -1 exactly; 0: scaled or normalised
   int index = -1;               // of element, column, row: fixed index; -1: the argument
   // Of builders and extractors (kept for the conventions): as in the file.
   std::string sequence, sense, turning, unit;

@@ -4,6 +4,8 @@
 #include <functional>
 #include <tuple>
 
+#include "solve/edits.h"
+
 namespace dextral::solve {
 
 namespace {
@@ -18,22 +20,6 @@ struct Candidate {
 bool maps(Shape shape) {
   return shape == Shape::matrix || shape == Shape::rotation || shape == Shape::quaternion || shape == Shape::pose ||
          shape == Shape::unknown;
-}
-
-bool primary(const std::string& text) {
-  int depth = 0;
-  for (char c : text) {
-    if (c == '(' || c == '[') ++depth;
-    if (c == ')' || c == ']') --depth;
-    if (depth == 0 && (c == ' ' || c == '*' || c == '+')) return false;
-  }
-  return !text.empty() && text.find("->*") == std::string::npos && text[0] != '-' && text[0] != '*';
-}
-
-std::string inverted(const std::string& form, const std::string& text) {
-  std::size_t hole = form.find("{}");
-  if (hole == std::string::npos) return "";
-  return form.substr(0, hole) + (primary(text) ? text : "(" + text + ")") + form.substr(hole + 2);
 }
 
 class Search {
@@ -272,7 +258,7 @@ class Search {
   // A declared variable of the same shape whose name shares a beginning.
   void other_variable(std::uint32_t index, int i) {
     const Operand& operand = op(index).operands[std::size_t(i)];
-    if (operand.value == ValueId::none || !primary(operand.text)) return;
+    if (operand.value == ValueId::none || !is_primary(operand.text)) return;
     int tried = 0;
     for (const Declaration& declaration : function_.declarations) {
       if (declaration.value == ValueId::none || declaration.value == operand.value || declaration.name == operand.text) continue;

@@ -24,6 +24,8 @@ enum class RepairKind {
   other_variable,  // `other` where `subject` stands
   twin_function,   // `other` where the function `subject` stands
   two_sided,       // the transpose of `subject` is missing on the right
+  add,             // `subject` is to be added to `other`
+  subtract,        // `subject` is to be subtracted from `other`
 };
 
 struct Repair {
@@ -48,6 +50,7 @@ struct Clash {
   std::string subject;     // the thing that has `left`
   std::string object;      // the thing that has `right`, may be empty
   Frame left, right;
+  std::string left_points, right_points;  // of points: "from hull to mast"
   std::vector<Reason> left_proof, right_proof;
   Certainty certainty = Certainty::certain;
   std::vector<Repair> repairs;  // best first; several: alternatives

@@ -11,10 +11,12 @@
 
 #include <algorithm>
 #include <functional>
+#include <iterator>
 #include <set>
 
 #include "solve/body.h"
 #include "solve/clash.h"
+#include "solve/points.h"
 #include "solve/repair.h"
 
 namespace dextral::solve {
@@ -111,6 +113,7 @@ class Program {
     for (std::size_t i : order)
       if (recursive.contains(i)) add_scheme(functions_[i].key, functions_[i], true);
     for (std::size_t i : order) solve(i);
+    for (std::size_t i : order) std::ranges::move(point_clashes(functions_[i], reached_), std::back_inserter(solution_.clashes));
     sort();
     return std::move(solution_);
   }
@@ -186,6 +189,7 @@ class Program {
   Twins twins_;
   std::vector<Function> functions_;
   Schemes schemes_;
+  ReachedBy reached_;
   Solution solution_;
 };
 

@@ -22,7 +22,7 @@ class Writer {
     json["certainty"] = dextral::text(finding.certainty);
     json["function"] = escaped(finding.function);
     json["sentence"] = escaped(finding.sentence);
-    json["frames"] = {dextral::text(finding.left_frame), dextral::text(finding.right_frame)};
+    json["sides"] = {escaped(finding.left_says), escaped(finding.right_says)};
     json["left"] = side(finding.left);
     json["right"] = side(finding.right);
     json["repairs"] = Json::array();

@@ -180,8 +180,8 @@ class Writer {
 
   static Json properties(const Finding& finding) {
     Json bag{{"certainty", dextral::text(finding.certainty)}};
-    if (finding.left_frame.known() || finding.right_frame.known())
-      bag["frames"] = {dextral::text(finding.left_frame), dextral::text(finding.right_frame)};
+    if (!finding.left_says.empty() || !finding.right_says.empty())
+      bag["sides"] = {escaped(finding.left_says), escaped(finding.right_says)};
     if (finding.witness)
       bag["witness"] = {{"degrees", std::round(finding.witness->degrees * 1000) / 1000},
                         {"attitude", finding.witness->attitude}};

@@ -34,8 +34,8 @@ class Text {
            paint(finding.rule, "1") + " (" + dextral::text(finding.certainty) + "): " + escaped(finding.sentence) +
            "\n";
     quote(finding.span, "    ");
-    side(finding.left, finding.left_frame);
-    side(finding.right, finding.right_frame);
+    side(finding.left, finding.left_says);
+    side(finding.right, finding.right_says);
     bool first = true;
     for (const solve::Repair& repair : finding.repairs) {
       const std::string sentence = words(repair);
@@ -85,9 +85,9 @@ class Text {
            paint(std::string(quoted->width, '~'), "32") + "\n";
   }
 
-  void side(const std::vector<Reason>& reasons, const Frame& frame) {
+  void side(const std::vector<Reason>& reasons, const std::string& says) {
     if (reasons.empty()) return;
-    out += "    " + (frame.known() ? escaped(dextral::text(frame)) : std::string("one side")) + ", because\n";
+    out += "    " + (says.empty() ? "one side" : escaped(says)) + ", because\n";
     for (const Reason& reason : reasons) {
       out += "      " + place(reason.span) + ": " + words(reason) + "\n";
       quote(reason.span, "        ");

@@ -85,6 +85,10 @@ std::string words(const solve::Repair& repair) {
       return "call " + other + " for " + subject;
     case solve::RepairKind::two_sided:
       return "multiply by " + (unnamed ? "the inverse of " + subject : other) + " on the right";
+    case solve::RepairKind::add:
+      return "add " + subject + " to " + other;
+    case solve::RepairKind::subtract:
+      return "subtract " + subject + " from " + other;
   }
   return "";
 }
@@ -107,6 +111,10 @@ const char* name(solve::RepairKind kind) {
       return "twin function";
     case solve::RepairKind::two_sided:
       return "two-sided";
+    case solve::RepairKind::add:
+      return "add";
+    case solve::RepairKind::subtract:
+      return "subtract";
   }
   return "none";
 }

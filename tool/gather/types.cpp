@@ -22,6 +22,25 @@ Shape shape_of_count(int numbers) {
   }
 }
 
+// m00, R12, xy: two indices at the end of each name.
+bool has_element_names(const std::vector<const FieldDecl*>& fields) {
+  auto is_index = [](char c) { return (c >= '0' && c <= '9') || (c >= 'x' && c <= 'z') || (c >= 'X' && c <= 'Z'); };
+  return std::all_of(fields.begin(), fields.end(), [&](const FieldDecl* field) {
+    const StringRef name = field->getName();
+    return name.size() >= 2 && is_index(name.back()) && is_index(name[name.size() - 2]);
+  });
+}
+
+// r0, r1, r2 or x, y, z: names that count.
+bool is_row_of_names(const std::vector<const FieldDecl*>& fields) {
+  const StringRef first = fields[0]->getName();
+  for (std::size_t i = 0; i < fields.size(); ++i) {
+    const StringRef name = fields[i]->getName();
+    if (name.size() != first.size() || name.drop_back() != first.drop_back() || name.back() != char(first.back() + char(i))) return false;
+  }
+  return true;
+}
+
 }  // namespace
 
 std::string Types::name(const NamedDecl* decl) {
@@ -80,10 +99,25 @@ int Types::numbers(QualType type) {
         if (!n) whole = false;
         count = decl->isUnion() ? std::max(count, n) : count + n;
       }
-      if (!whole) count = 0;
+      if (!whole || !is_one_group(decl)) count = 0;
     }
   }
   return numbers_[type.getTypePtr()] = count;
+}
+
+bool Types::is_one_group(const RecordDecl* record) {
+  std::vector<const FieldDecl*> fields(record->field_begin(), record->field_end());
+  if (fields.size() < 2 || record->isUnion()) return true;
+  bool scalars = true, alike = true, named = true;
+  int total = 0;
+  for (const FieldDecl* field : fields) {
+    scalars = scalars && field->getType()->isRealFloatingType();
+    alike = alike && context_.hasSameUnqualifiedType(field->getType(), fields[0]->getType());
+    named = named && field->getIdentifier();
+    total += numbers(field->getType());
+  }
+  if (!named || total <= 4) return true;
+  return scalars ? has_element_names(fields) : alike && is_row_of_names(fields);
 }
 
 int Types::index(const FieldDecl* field) {

@@ -47,6 +47,9 @@ class Types {
 
  private:
   TypeFacts compute(clang::QualType);
+  // Is a record of numbers one vector, quaternion or matrix? A state of several
+  // vectors (`double r[3], v[3], a[3];`) is not, though it has nine numbers.
+  bool is_one_group(const clang::RecordDecl*);
   const project::TypeModel* model_of(const clang::CXXRecordDecl*, const clang::CXXRecordDecl*& found, int depth = 0);
   std::optional<long long> constant_in(const clang::CXXRecordDecl*, const std::string& name);
   TypeFacts by_model(const project::TypeModel&, const clang::CXXRecordDecl*, clang::QualType);

@@ -135,11 +135,22 @@ class Program {
       record(function, culprit, removed, sheeted);
       removed.insert(culprit.operation);
       removed.insert(culprit.cleared.begin(), culprit.cleared.end());
+      if (solution_.clashes.back().kind == ClashKind::contract) remove_contracts(function, culprit.operation, removed);
       sheeted = sheet_of(function, setting(), removed);
     }
     solution_.values[index] = known(function, sheeted);
     count(function, solution_.values[index]);
     schemes_[function.key] = scheme_of(function, sheeted, setting());
+  }
+
+  // Phrases that contradict each other: nobody knows which is right, so the body
+  // is held against none of them.
+  static void remove_contracts(const Function& function, std::uint32_t refused, std::set<std::uint32_t>& removed) {
+    const ValueId value = function.operations[refused].operands[0].value;
+    for (std::uint32_t i = 0; i < function.operations.size(); ++i) {
+      const Operation& op = function.operations[i];
+      if (op.kind == OperationKind::hold && op.operands[0].value == value && function.holds.at(op.item).contract) removed.insert(i);
+    }
   }
 
   void record(const Function& function, const Culprit& culprit, const std::set<std::uint32_t>& removed, Sheeted& surfaced) {

@@ -68,7 +68,9 @@ std::vector<BarComment> bar_comments(FileID file, const SourceManager& manager, 
     llvm::StringRef before = buffer->substr(0, offset);
     before = before.substr(before.rfind('\n') == llvm::StringRef::npos ? 0 : before.rfind('\n') + 1);
     llvm::StringRef after = buffer->substr(comment.end).split('\n').first;
-    comment.is_inline = text.starts_with("/*|") && !(before.trim().empty() && after.trim().empty());
+    // Behind a whole declaration `/*| */` speaks of all its names, as `//|` does.
+    const bool behind = before.trim().empty() || before.trim().ends_with(";");
+    comment.is_inline = text.starts_with("/*|") && !(behind && after.trim().empty());
     comment.alone = before.trim().empty() && (text.starts_with("//|") || after.trim().empty());
     unsigned column = manager.getColumnNumber(file, offset);
     if (!list.empty() && continues(list.back(), comment, columns.back(), column)) {

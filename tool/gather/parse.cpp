@@ -137,7 +137,7 @@ bool parse(const project::Unit& unit, const project::Project& project, Facts& fa
     return false;
   }
   invocation->getFrontendOpts().SkipFunctionBodies = true;
-  invocation->getFrontendOpts().DisableFree = true;
+  invocation->getFrontendOpts().DisableFree = false;  // a worker reads many units
   invocation->getDiagnosticOpts().IgnoreWarnings = true;
   CompilerInstance compiler;
   compiler.setInvocation(invocation);

@@ -7,8 +7,9 @@ Told are the ratio of processor time (user + sys, the best of the runs: the rest
 is noise of the machine) and the ratio of peak memory (the largest process).
 The start of a process is part of both; there are more of the plain check.
 
-Usage: cost.py BUILD [--runs N] [--limit RATIO] [FILE... [-- FLAGS]]
-Without files: the samples that come with the project."""
+Usage: cost.py BUILD [--runs N] [--limit RATIO] [--project FOLDER | FILE... [-- FLAGS]]
+Without files: the samples that come with the project. FOLDER holds a
+compile_commands.json, whose files are all taken with their own flags."""
 import argparse
 import json
 import os
@@ -58,20 +59,29 @@ def compiler(file):
     return ["clang-19", "-std=c11"] if file.endswith(".c") else ["clang++-19", "-std=c++17"]
 
 
-def lint_cost(program, folder, files):
+def lint_cost(program, folder, files, report):
     command = [program, "lint", "-j1", "--fail-on", "never", "--allow-unread", "--compile-commands", folder,
-               "--output", os.path.join(folder, "report"), *files]
-    status, seconds, megabytes = spend(command, ROOT)
+               "--output", os.path.join(report, "report"), *files]
+    status, seconds, megabytes = spend(command, folder)
     if status != 0:
         sys.exit("cost: exit status %d of %s" % (status, shlex.join(command)))
     return seconds, megabytes
 
 
-def check_cost(files, flags):
+def project_checks(folder):
+    """(folder, command) of each plain syntax check of a compile database."""
+    checks = []
+    for entry in json.loads((pathlib.Path(folder) / "compile_commands.json").read_text()):
+        words = entry.get("arguments") or shlex.split(entry["command"])
+        kept = [w for i, w in enumerate(words[1:]) if w not in ("-c", "-o") and words[i] != "-o"]
+        checks.append((entry["directory"], [compiler(entry["file"])[0], "-fsyntax-only", "-w", *kept]))
+    return checks
+
+
+def check_cost(checks):
     seconds = megabytes = 0.0
-    for file in files:
-        command = compiler(file) + flags + ["-fsyntax-only", "-w", file]
-        status, time, memory = spend(command, ROOT)
+    for directory, command in checks:
+        status, time, memory = spend(command, directory)
         if status != 0:
             print("cost: does not compile, counted all the same: " + shlex.join(command), file=sys.stderr)
         seconds += time
@@ -89,21 +99,26 @@ def main():
     parser.add_argument("build")
     parser.add_argument("files", nargs="*")
     parser.add_argument("--runs", type=int, default=3)
+    parser.add_argument("--project")
     parser.add_argument("--limit", type=float, help="exit status 1 where the ratio of processor time is above")
     asked = parser.parse_args(arguments)
     program = shutil.which("dextral", path=os.path.abspath(asked.build))
     files = [os.path.abspath(f) for f in asked.files] or samples()
     if not program or not files:
         sys.exit("cost: no dextral in %s" % asked.build if not program else "cost: no files")
-    with tempfile.TemporaryDirectory() as folder:
-        write_commands(folder, files, flags)
+    with tempfile.TemporaryDirectory() as scratch:
+        if asked.project:
+            folder, files, commands = os.path.abspath(asked.project), [], project_checks(asked.project)
+        else:
+            write_commands(scratch, files, flags)
+            folder, commands = scratch, [(ROOT, compiler(f) + flags + ["-fsyntax-only", "-w", f]) for f in files]
         lints, checks = [], []
         for _ in range(asked.runs):
-            checks.append(check_cost(files, flags))
-            lints.append(lint_cost(program, folder, files))
+            checks.append(check_cost(commands))
+            lints.append(lint_cost(program, folder, files, scratch))
     lint = [min(column) for column in zip(*lints)]
     check = [min(column) for column in zip(*checks)]
-    print("%d files, best of %d runs" % (len(files), asked.runs))
+    print("%d files, best of %d runs" % (len(commands), asked.runs))
     print("               lint -j1    syntax check    ratio")
     print("user + sys  %8.2f s    %10.2f s    %5.2f" % (lint[0], check[0], lint[0] / check[0]))
     print("peak memory %7.0f MB    %9.0f MB    %5.2f" % (lint[1], check[1], lint[1] / check[1]))

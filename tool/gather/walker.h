@@ -7,9 +7,10 @@
 // an object. What is not understood gives an empty Result and forgets what it
 // may have written.
 //
-// The methods stand in four files: places.cpp (reading and writing),
-// expressions.cpp, calls.cpp (models, inlined accessors, calls of functions),
-// statements.cpp (control flow, entry and exit).
+// The methods stand in seven files: places.cpp (reading and writing),
+// expressions.cpp, calls.cpp (inlined accessors, calls of functions),
+// models.cpp (what models say), statements.cpp, loops.cpp (and joins),
+// body.cpp (entry and exit).
 #pragma once
 
 #include <map>

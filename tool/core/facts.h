@@ -21,6 +21,7 @@
 #include <vector>
 
 #include "core/evidence.h"
+#include "core/measured.h"
 #include "core/quantity.h"
 #include "core/span.h"
 
@@ -185,6 +186,7 @@ struct Facts {
   std::vector<FieldFacts> fields;
   std::vector<Complaint> complaints;
   std::vector<AcceptanceAt> acceptances;
+  std::vector<Measurement> measurements;
 };
 
 // The facts of all units, joined: files numbered anew, a function that several

@@ -159,9 +159,51 @@ void fields(Archive& archive, Is<FieldFacts> auto& x) {
 }
 
 template <class Archive>
+void fields(Archive& archive, Is<Group> auto& x) {
+  auto& [formal, text, count, rows, columns, integer, quaternion, column_major] = x;
+  archive(formal, text, count, rows, columns, integer, quaternion, column_major);
+}
+
+template <class Archive>
+void fields(Archive& archive, Is<Signature> auto& x) {
+  auto& [inputs, outputs, single_precision] = x;
+  archive(inputs, outputs, single_precision);
+}
+
+template <class Archive>
+void fields(Archive& archive, Is<Term> auto& x) {
+  auto& [formal, output, quantity] = x;
+  archive(formal, output, quantity);
+}
+
+template <class Archive>
+void fields(Archive& archive, Is<Meaning> auto& x) {
+  auto& [id, words, formula, contract, equivalents] = x;
+  archive(id, words, formula, contract, equivalents);
+}
+
+template <class Archive>
+void fields(Archive& archive, Is<Selected> auto& x) {
+  auto& [formal, value] = x;
+  archive(formal, value);
+}
+
+template <class Archive>
+void fields(Archive& archive, Is<Trial> auto& x) {
+  auto& [input, output] = x;
+  archive(input, output);
+}
+
+template <class Archive>
+void fields(Archive& archive, Is<Measurement> auto& x) {
+  auto& [key, name, span, signature, selected, meanings, refusal, trials, points, steps, worst] = x;
+  archive(key, name, span, signature, selected, meanings, refusal, trials, points, steps, worst);
+}
+
+template <class Archive>
 void fields(Archive& archive, Is<Facts> auto& x) {
-  auto& [unit, read, not_read_because, files, functions, field_facts, complaints, acceptances] = x;
-  archive(unit, read, not_read_because, files, functions, field_facts, complaints, acceptances);
+  auto& [unit, read, not_read_because, files, functions, field_facts, complaints, acceptances, measurements] = x;
+  archive(unit, read, not_read_because, files, functions, field_facts, complaints, acceptances, measurements);
 }
 
 class Writer {
@@ -174,6 +216,7 @@ class Writer {
 
  private:
   void put(const std::string& s) { tokens_.push_back(s); }
+  void put(double x) { tokens_.push_back(x); }
   template <class T>
     requires std::is_arithmetic_v<T> || std::is_enum_v<T>
   void put(T x) {
@@ -247,6 +290,9 @@ class Reader {
   }
   void get(std::string& s) {
     if (const json* t = token(&json::is_string)) s = t->get_ref<const std::string&>();
+  }
+  void get(double& x) {
+    if (const json* t = token(&json::is_number_float)) x = t->get<double>();
   }
   template <class T>
     requires std::is_arithmetic_v<T> || std::is_enum_v<T>

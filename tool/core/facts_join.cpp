@@ -43,6 +43,7 @@ class Renumber {
   void in(FieldFacts& x) const { in(x.span); }
   void in(Complaint& x) const { in(x.span); }
   void in(AcceptanceAt& x) const { in(x.span); }
+  void in(Measurement& x) const { in(x.span); }
   void in(Function& x) const {
     in(x.span);
     each(x.values);
@@ -66,6 +67,7 @@ void renumber(Facts& unit, FileTable& files) {
   numbers.each(unit.fields);
   numbers.each(unit.complaints);
   numbers.each(unit.acceptances);
+  numbers.each(unit.measurements);
 }
 
 FileTable all_files(const std::vector<Facts>& units) {
@@ -87,6 +89,13 @@ auto order(const Complaint& c) {
 }
 auto order(const AcceptanceAt& a) {
   return std::tuple(a.span, std::string_view(a.acceptance.rule), std::string_view(a.acceptance.reason), a.from, a.to);
+}
+
+// What was measured comes before what could not be.
+auto order(const Measurement& m) {
+  std::vector<std::pair<std::string, long long>> selected;
+  for (const Selected& s : m.selected) selected.emplace_back(s.formal, s.value);
+  return std::tuple(std::string_view(m.key), std::move(selected), !m.refusal.empty(), m.span);
 }
 
 // Of several with one key the first by `order` stays; of equals the first seen.
@@ -162,11 +171,13 @@ Facts join(std::vector<Facts> units) {
     fields.add(unit.fields);
     append(program.complaints, unit.complaints);
     append(program.acceptances, unit.acceptances);
+    append(program.measurements, unit.measurements);
   }
   program.functions = functions.take();
   program.fields = fields.take();
   sort_and_keep_once(program.complaints);
   sort_and_keep_once(program.acceptances);
+  sort_and_keep_once(program.measurements);
   return program;
 }
 

@@ -16,6 +16,7 @@
 
 #include "solve/body.h"
 #include "solve/clash.h"
+#include "solve/measured.h"
 #include "solve/points.h"
 #include "solve/repair.h"
 
@@ -104,6 +105,7 @@ class Program {
   Program(const Facts& facts, const FrameCatalogue& frames) : facts_(facts), frames_(frames), twins_(twins_of(facts.functions)) {
     for (const Function& f : facts.functions) functions_.push_back(dispatched_by_contract(f));
     solution_.values.resize(functions_.size());
+    for (const Measurement& m : facts.measurements) measured_[m.key].push_back(&m);
   }
 
   Solution run() {
@@ -141,6 +143,19 @@ class Program {
     solution_.values[index] = known(function, sheeted);
     count(function, solution_.values[index]);
     schemes_[function.key] = scheme_of(function, sheeted, setting());
+    add_measured(function);
+  }
+
+  // What running it has shown holds beside what its text says.
+  void add_measured(const Function& function) {
+    auto found = measured_.find(function.key);
+    if (found == measured_.end()) return;
+    const std::optional<Function> contract = as_contract(function, found->second);
+    if (!contract) return;
+    Sheeted sheeted = sheet_of(*contract, setting(), {});
+    Scheme scheme = scheme_of(*contract, sheeted, setting());
+    std::ranges::move(schemes_[function.key].edges, std::back_inserter(scheme.edges));
+    schemes_[function.key] = std::move(scheme);
   }
 
   // Phrases that contradict each other: nobody knows which is right, so the body
@@ -201,6 +216,7 @@ class Program {
   std::vector<Function> functions_;
   Schemes schemes_;
   ReachedBy reached_;
+  std::map<std::string, std::vector<const Measurement*>> measured_;
   Solution solution_;
 };
 

@@ -15,7 +15,7 @@ ALLOWED = {
     "tool/phrase": {"core"},
     "tool/project": {"core", "phrase"},
     "tool/gather": {"core", "phrase", "project"},
-    "tool/probe": {"core"},
+    "tool/probe": {"core", "project", "gather"},
     "tool/solve": {"core"},
     "rules": {"core", "solve"},
     "tool/tell": {"core", "solve", "rules"},

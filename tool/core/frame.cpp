@@ -201,10 +201,13 @@ std::vector<std::string> FrameCatalogue::names() const {
   return list;
 }
 
+// A letter too many or too few is a slip; another letter is one in long names
+// only: gcrs and icrs, ecl and eci are different frames.
 std::optional<std::string> FrameCatalogue::nearest(const std::string& name) const {
-  if (name.size() < 3) return std::nullopt;
+  constexpr std::size_t kLong = 6;
+  if (name.size() < 3 || std::isdigit(static_cast<unsigned char>(name.back()))) return std::nullopt;
   for (const std::string& known : names())
-    if (known.size() >= 3 && edits(name, known) == 1 && !std::isdigit(static_cast<unsigned char>(name.back()))) return known;
+    if (known.size() >= 3 && edits(name, known) == 1 && (known.size() != name.size() || name.size() >= kLong)) return known;
   return std::nullopt;
 }
 

@@ -79,7 +79,7 @@ class FrameCatalogue {
   std::optional<Hand> hand(const Frame&) const;
   // The map that takes components in `from` to components in `to`.
   std::optional<SignedPermutation> map(const Frame& to, const Frame& from) const;
-  // A declared or built-in name one or two letters away, or none.
+  // The declared or built-in name that it is a slip of, or none.
   std::optional<std::string> nearest(const std::string& name) const;
   std::vector<std::string> names() const;
 

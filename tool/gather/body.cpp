@@ -43,6 +43,20 @@ void Walker::enter() {
   }
 }
 
+// What a call has written that nobody understands is still what the parameter's
+// phrase says; not where the function has read it before, since then the phrase
+// may speak of what went in.
+void Walker::hold_outputs() {
+  for (const ParmVarDecl* parameter : function_->parameters()) {
+    const bool by_place = parameter->getType()->isReferenceType() || parameter->getType()->isPointerType();
+    const Place place = place_of(parameter);
+    if (!by_place || place.path != path_of(parameter) || epoch(place.path) == 0 || said_of(place).empty()) continue;
+    const auto& readings = recorder_.function.readings;
+    const bool read_before = std::any_of(readings.begin(), readings.end(), [&](const Reading& r) { return r.path == place.path && r.epoch == 0; });
+    if (!read_before && !now_.groups.contains(place.path) && unit_.types.of(place.type).group) read_whole(place, parameter->getSourceRange());
+  }
+}
+
 void Walker::leave() {
   std::vector<std::string> paths;
   for (const auto& [path, state] : now_.groups) paths.push_back(path);
@@ -55,6 +69,7 @@ void Walker::leave() {
     if (state.self_update && state.place.decl && !by_value && path[0] != 'l' && path[0] != 't')
       hold(state.base, state.place, state.range, true, state.place.decl->getNameAsString());
   }
+  hold_outputs();
   auto& exits = recorder_.function.exits;
   for (const ParmVarDecl* parameter : function_->parameters()) {
     Place place{"p" + std::to_string(parameter->getFunctionScopeIndex()), parameter->getType(), nullptr, -1, 0, {}, ""};

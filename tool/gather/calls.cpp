@@ -26,11 +26,7 @@ bool is_map(Shape s) {
 
 }  // namespace
 
-std::string Walker::key_of(const FunctionDecl* function) {
-  llvm::SmallString<128> usr;
-  if (index::generateUSRForDecl(function, usr)) return function->getQualifiedNameAsString();
-  return std::string(usr);
-}
+std::string Walker::key_of(const FunctionDecl* function) { return gather::key_of(function); }
 
 Result Walker::call(const CallExpr* expr) {
   Invocation invocation;

@@ -113,7 +113,7 @@ std::vector<const char*> command(const std::vector<std::string>& words) {
 
 }  // namespace
 
-bool parse(const project::Unit& unit, const project::Project& project, Facts& facts, const Visit& visit) {
+bool parse(const project::Unit& unit, const project::Project& project, Facts& facts, const Visit& visit, Bodies bodies) {
   std::vector<std::string> words{"clang", "-fsyntax-only", "-resource-dir", resource_folder(), "-Wno-everything", "-ferror-limit=0"};
   words.insert(words.end(), unit.arguments.begin(), unit.arguments.end());
   words.push_back("--");
@@ -136,7 +136,8 @@ bool parse(const project::Unit& unit, const project::Project& project, Facts& fa
     facts.not_read_because = "its flags are not understood";
     return false;
   }
-  invocation->getFrontendOpts().SkipFunctionBodies = true;
+  invocation->getFrontendOpts().SkipFunctionBodies = bodies == Bodies::of_scope;
+  if (bodies == Bodies::all) invocation->getLangOpts().DelayedTemplateParsing = true;
   invocation->getFrontendOpts().DisableFree = false;  // a worker reads many units
   invocation->getDiagnosticOpts().IgnoreWarnings = true;
   CompilerInstance compiler;

@@ -1,5 +1,7 @@
-// One translation unit through Clang: parsed as a prefix, bodies outside the
-// scope skipped, fatal errors as errors.
+// One translation unit through Clang: parsed as a prefix, fatal errors as errors.
+//
+// Bodies outside the scope are skipped, or all bodies are at hand: those of
+// templates are then parsed when something instantiates them.
 #pragma once
 
 #include <functional>
@@ -12,8 +14,10 @@ namespace dextral::gather {
 
 using Visit = std::function<void(clang::ASTContext&, clang::Sema&)>;
 
+enum class Bodies { of_scope, all };
+
 // Calls `visit` once the unit is parsed. Errors go into the facts; false: the
 // unit could not be parsed at all.
-bool parse(const project::Unit&, const project::Project&, Facts&, const Visit& visit);
+bool parse(const project::Unit&, const project::Project&, Facts&, const Visit& visit, Bodies = Bodies::of_scope);
 
 }  // namespace dextral::gather

@@ -23,6 +23,12 @@ std::string shortened(const std::string& text) {
   return line.substr(0, cut) + " ...";
 }
 
+std::string key_of(const FunctionDecl* function) {
+  llvm::SmallString<128> usr;
+  if (index::generateUSRForDecl(function, usr)) return function->getQualifiedNameAsString();
+  return std::string(usr);
+}
+
 bool Source::in_macro(SourceRange range) const { return range.getBegin().isMacroID() || range.getEnd().isMacroID(); }
 
 std::string Source::file_of(SourceLocation location) const {

@@ -28,4 +28,7 @@ class Source {
 
 std::string shortened(const std::string&);
 
+// Function::key: the same in every unit.
+std::string key_of(const clang::FunctionDecl*);
+
 }  // namespace dextral::gather

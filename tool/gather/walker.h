@@ -109,6 +109,7 @@ class Walker {
   // statements.cpp
   void enter();
   void leave();
+  void hold_outputs();
   void contract_only();
   void statement(const clang::Stmt*);
   void declare(const clang::VarDecl*);

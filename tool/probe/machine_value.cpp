@@ -21,6 +21,8 @@ const char* sentence(Cause cause) {
       return "shifts by too many bits";
     case Cause::conversion:
       return "converts a number that does not fit";
+    case Cause::wild:
+      return "computes a wild pointer";
     case Cause::unset:
       break;
   }

@@ -30,7 +30,7 @@ struct Slot {
   std::uint64_t undefined = 0;
 };
 
-enum class Cause : std::uint8_t { unset = 0, overflow = 1, shift = 3, conversion = 5 };
+enum class Cause : std::uint8_t { unset = 0, overflow = 1, shift = 3, conversion = 5, wild = 7 };
 
 constexpr std::uint64_t ones(unsigned width) { return width >= 64 ? ~0ull : (1ull << width) - 1; }
 

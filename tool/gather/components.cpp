@@ -60,6 +60,7 @@ class Assembly {
     for (const Polynomial& p : group_.elements)
       if (!p.known()) return opaque_or_partial();
     Classes classes = split(group_.elements);
+    if (mixes(classes)) return opaque();
     std::vector<Operand> parts;
     std::vector<int> signs;
     for (const auto& [key, entries] : classes) {
@@ -95,6 +96,19 @@ class Assembly {
     ValueId result = recorder_.value(recorder_.at(id).shape, recorder_.at(id).rotation, recorder_.at(id).text, group_.span);
     recorder_.operation(OperationKind::transpose, result, {operand(id)}, group_.span, group_.text);
     return result;
+  }
+
+  // (c x - s y, s x + c y, z): a vector that stands in its own places and in
+  // others too is turned by a map that nobody knows.
+  static bool mixes(const Classes& classes) {
+    std::map<ValueId, int> in_place, elsewhere;
+    for (const auto& [key, entries] : classes) {
+      if (key.values.size() != 1) continue;
+      const bool keeps = std::all_of(entries.begin(), entries.end(), [](const Entry& e) { return e.element == e.indices[0]; });
+      ++(keeps ? in_place : elsewhere)[key.values[0]];
+    }
+    return std::any_of(elsewhere.begin(), elsewhere.end(),
+                       [&](const auto& entry) { return entry.second > 1 || in_place.contains(entry.first); });
   }
 
   // 1 or -1 where a whole vector stands with that factor; else 0.

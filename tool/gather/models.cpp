@@ -140,6 +140,8 @@ Result Walker::made(OperationKind kind, Invocation& invocation, std::vector<Oper
       line = integer(index->result, index->expr).value_or(-1);
   Argument* target = model.into == project::kReturn ? nullptr : argument(invocation, model.into);
   QualType type = target ? unit_.types.bare(target->expr->getType()) : invocation.type;
+  // As an argument `double out[3]` is a pointer; what stands there is an array.
+  if (target && target->result.place && target->result.place->offset == -1) type = target->result.place->type;
   Value like = unit_.types.value(type, text, where);
   if (like.shape == Shape::number) {  // a product of a row and a vector
     recorder_.operation(kind, recorder_.value(Shape::number, false, text, where), operands, where, text);

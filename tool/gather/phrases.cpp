@@ -18,7 +18,7 @@ struct Declared {
   const NamedDecl* decl;
   FileID file;
   unsigned name_line, begin_line, end_line;
-  unsigned begin, end;  // offsets
+  unsigned begin, name;  // offsets
 };
 
 struct Head {  // of a function: up to its body or its semicolon
@@ -44,7 +44,7 @@ struct Inventory : RecursiveASTVisitor<Inventory> {
     SourceLocation at = manager.getExpansionLoc(decl->getLocation());
     if (at.isInvalid() || range.isInvalid()) return;
     SourceLocation begin = manager.getExpansionLoc(range.getBegin()), end = manager.getExpansionRange(range.getEnd()).getEnd();
-    declared.push_back({decl, manager.getFileID(at), line(at), line(begin), line(end), manager.getFileOffset(begin), manager.getFileOffset(end)});
+    declared.push_back({decl, manager.getFileID(at), line(at), line(begin), line(end), manager.getFileOffset(begin), manager.getFileOffset(at)});
     attributes(decl);
   }
   bool VisitVarDecl(VarDecl* decl) {
@@ -164,18 +164,25 @@ class Attacher {
     return found;
   }
 
+  // The last name before the comment, else the first behind it; of
+  // `a, /*| in ned */ double b` the one behind.
   const NamedDecl* beside(const BarComment& comment) const {
-    const Declared* best = nullptr;
-    auto distance = [&](const Declared& d) {
-      if (d.begin <= comment.offset && comment.offset <= d.end) return 0u;
-      if (d.end < comment.offset) return comment.offset - d.end;
-      return d.begin + 1000 - comment.offset;
-    };
+    const Declared *before = nullptr, *behind = nullptr;
     for (const Declared& d : declared_) {
       if (comment.line < d.begin_line || comment.line > d.end_line) continue;
-      if (!best || distance(d) < distance(*best) || (distance(d) == distance(*best) && d.begin > best->begin)) best = &d;
+      if (d.name < comment.offset) {
+        if (!before || d.name > before->name) before = &d;
+      } else if (!behind || d.name < behind->name) {
+        behind = &d;
+      }
     }
-    return best ? best->decl : nullptr;
+    if (before && behind && behind->begin_line == comment.line && separated(before->name, comment.offset)) before = nullptr;
+    return before ? before->decl : behind ? behind->decl : nullptr;
+  }
+
+  bool separated(unsigned from, unsigned to) const {
+    const StringRef text = phrases_.source_.manager().getBufferData(file_);
+    return text.slice(from, to).find_first_of(",;{(") != StringRef::npos;
   }
 
   void say(const NamedDecl* decl, const Said& said) {

@@ -117,7 +117,7 @@ bool Types::is_one_group(const RecordDecl* record) {
     total += numbers(field->getType());
   }
   if (!named || total <= 4) return true;
-  return scalars ? has_element_names(fields) : alike && is_row_of_names(fields);
+  return scalars ? has_element_names(fields) : alike && fields[0]->getType()->isRecordType() && is_row_of_names(fields);
 }
 
 int Types::index(const FieldDecl* field) {

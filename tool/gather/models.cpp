@@ -87,7 +87,7 @@ Result Walker::apply(const project::FunctionModel& model, Invocation& invocation
     Result result;
     result.literal = true;
     if (model.into != project::kReturn) {
-      store(invocation, model.into, ValueId::none, true);
+      store(invocation, model, ValueId::none, true);
       if (auto* object = argument(invocation, model.into); model.also_returned && object) return object->result;
       return {};
     }
@@ -96,7 +96,7 @@ Result Walker::apply(const project::FunctionModel& model, Invocation& invocation
   auto kind = operation_names().find(model.is);
   if (kind == operation_names().end()) {  // opaque, build, extract
     forget_writable(invocation);
-    if (model.into != project::kReturn) store(invocation, model.into, ValueId::none, false);
+    if (model.into != project::kReturn) store(invocation, model, ValueId::none, false);
     return {};
   }
   std::vector<int> of = model.of;
@@ -109,7 +109,7 @@ Result Walker::apply(const project::FunctionModel& model, Invocation& invocation
     Operand operand = this->operand(argument->result, argument->expr);
     if (operand.value == ValueId::none) {
       // A part that is not understood: the whole is not.
-      if (model.into != project::kReturn) store(invocation, model.into, ValueId::none, false);
+      if (model.into != project::kReturn) store(invocation, model, ValueId::none, false);
       return {};
     }
     if (std::find(model.transposed.begin(), model.transposed.end(), number) != model.transposed.end()) {
@@ -156,7 +156,7 @@ Result Walker::made(OperationKind kind, Invocation& invocation, std::vector<Oper
   if (line >= 0) op.numbers = {line};
   if (kind == OperationKind::copy && model.factor) op.numbers = {model.factor};
   if (model.into != project::kReturn) {
-    store(invocation, model.into, id, false);
+    store(invocation, model, id, false);
     if (target && model.also_returned) return target->result;
     return {};
   }
@@ -169,8 +169,8 @@ Result Walker::made(OperationKind kind, Invocation& invocation, std::vector<Oper
 }
 
 // The new version of an argument that the function writes.
-void Walker::store(Invocation& invocation, int into, ValueId id, bool literal) {
-  Argument* target = argument(invocation, into);
+void Walker::store(Invocation& invocation, const project::FunctionModel& model, ValueId id, bool literal) {
+  Argument* target = argument(invocation, model.into);
   if (!target) return;
   SourceRange range = invocation.expr->getSourceRange();
   Operand from{id, {}, brief(range)};
@@ -178,9 +178,10 @@ void Walker::store(Invocation& invocation, int into, ValueId id, bool literal) {
   if (!target->result.place) return;
   const Place& place = *target->result.place;
   if (id == ValueId::none && !literal) return forget(place);
+  const bool in_place = model.of.empty() || std::find(model.of.begin(), model.of.end(), model.into) != model.of.end();
   bool self = false;
   for (const Argument& other : invocation.arguments)
-    self |= other.result.place && other.result.place->path == place.path && (&other != target || into == 0);
+    self |= other.result.place && other.result.place->path == place.path && (&other != target || in_place);
   if (reads_ && reads_->contains(place.path)) self = true;
   write_value(place, id, literal, range, from, ReasonKind::assigned, self && !literal);
 }

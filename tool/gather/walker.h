@@ -215,7 +215,7 @@ class Walker {
   Result part(Invocation&, const project::FunctionModel&);
   Result component(Invocation&, const project::FunctionModel&);
   Result built(Invocation&, const project::FunctionModel&);
-  void store(Invocation&, int into, ValueId, bool literal);
+  void store(Invocation&, const project::FunctionModel&, ValueId, bool literal);
   Argument* argument(Invocation&, int number);
   bool fits(const project::FunctionModel&, Invocation&);
   Shape shape(const Argument&);

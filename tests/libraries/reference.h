@@ -265,6 +265,10 @@ inline Things allowed(const Claim& c, const Things& o, int k) {
   if (c.is == "pose") return {with_translation(o[0], o[1], false), with_translation(o[0], o[1], true)};
   if (c.is == "column") return {vector(column())};
   if (c.is == "row") return {vector(o[0].linear[k]), row(o[0].linear[k])};
+  if (c.is == "columns" || c.is == "rows") {
+    const Square rows{o[0].vector, o[1].vector, o[2].vector};
+    return {matrix(c.is == "rows" ? rows : transposed(rows))};
+  }
   if (c.is == "transform")
     return {matrix(multiplied(multiplied(o[0].linear, o[1].linear), transposed(o[0].linear)))};
   return {};

@@ -93,7 +93,8 @@ Result Walker::apply(const project::FunctionModel& model, Invocation& invocation
     }
     return result;
   }
-  auto kind = operation_names().find(model.is);
+  const bool lines = model.is == "columns" || model.is == "rows";
+  auto kind = operation_names().find(lines ? model.is.substr(0, model.is.size() - 1) : model.is);
   if (kind == operation_names().end()) {  // opaque, build, extract
     forget_writable(invocation);
     if (model.into != project::kReturn) store(invocation, model, ValueId::none, false);
@@ -121,7 +122,22 @@ Result Walker::apply(const project::FunctionModel& model, Invocation& invocation
     }
     operands.push_back(std::move(operand));
   }
+  if (lines) return put_together(kind->second, invocation, operands, model);
   return made(kind->second, invocation, std::move(operands), model);
+}
+
+// A matrix whose columns or rows are given: each of them has a frame of it.
+Result Walker::put_together(OperationKind line, Invocation& invocation, const std::vector<Operand>& lines,
+                            const project::FunctionModel& model) {
+  const Span where = span(invocation.expr->getSourceRange());
+  const std::string text = brief(invocation.expr->getSourceRange());
+  const Value like = unit_.types.value(invocation.type, text, where);
+  Result result;
+  result.value = recorder_.value(like.shape, like.rotation, text, where, like.inverse_form);
+  for (std::size_t i = 0; i < lines.size(); ++i)
+    recorder_.operation(line, lines[i].value, {{result.value, {}, text}}, where, text).numbers = {int(i)};
+  if (model.into != project::kReturn) store(invocation, model, result.value, false);
+  return result;
 }
 
 Result Walker::made(OperationKind kind, Invocation& invocation, std::vector<Operand> operands, const project::FunctionModel& model) {

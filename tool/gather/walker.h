@@ -211,6 +211,7 @@ class Walker {
   Result called(Invocation&);
   Result apply(const project::FunctionModel&, Invocation&);
   Result made(OperationKind, Invocation&, std::vector<Operand>, const project::FunctionModel&);
+  Result put_together(OperationKind line, Invocation&, const std::vector<Operand>& lines, const project::FunctionModel&);
   Result streamed(Invocation&);
   Result part(Invocation&, const project::FunctionModel&);
   Result component(Invocation&, const project::FunctionModel&);

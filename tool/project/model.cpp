@@ -31,6 +31,7 @@ constexpr Arity kOperations[] = {
     {"product", 2, 8},     {"transpose", 1, 1}, {"inverse", 1, 1}, {"copy", 1, 1},    {"sum", 1, 8},
     {"difference", 2, 8},  {"cross", 2, 2},     {"dot", 1, 8},     {"skew", 1, 1},    {"unskew", 1, 1},
     {"translation", 1, 1}, {"pose", 1, 2},      {"column", 1, 1},  {"row", 1, 1},     {"transform", 2, 2},
+    {"columns", 3, 3},     {"rows", 3, 3},
     {"shuffle", 1, 1},     {"literal", 0, 0},   {"opaque", 0, 8},  {"element", 1, 1}, {"elements", 0, 16},
     {"stream", 0, 2},      {"part", 1, 1},      {"fill", 0, 8},    {"build", 0, 8},   {"extract", 0, 1}};
 

@@ -78,7 +78,34 @@ std::optional<Result> Walker::modelled(Invocation& invocation) {
   return std::nullopt;
 }
 
+// How many vectors `double pv[2][3]` holds; 0 where it is a matrix or no array of vectors.
+std::size_t Walker::vectors_in(const Argument& argument) {
+  if (!argument.result.place || argument.result.place->offset != -1) return 0;
+  const auto* array = unit_.ast.getAsConstantArrayType(argument.result.place->type);
+  if (!array || unit_.types.of(argument.result.place->type).group || unit_.types.numbers(array->getElementType()) != 3) return 0;
+  const std::uint64_t count = array->getSize().getLimitedValue(1000);
+  return count <= 8 ? std::size_t(count) : 0;
+}
+
+// A position and its rates in one array: what is done to the array is done to each.
+bool Walker::applied_to_each(const project::FunctionModel& model, Invocation& invocation) {
+  std::size_t count = 0;
+  for (const Argument& argument : invocation.arguments) count = std::max(count, vectors_in(argument));
+  for (std::size_t k = 0; k < count; ++k) {
+    Invocation one = invocation;
+    for (Argument& argument : one.arguments) {
+      if (vectors_in(argument) <= k) continue;
+      const Place whole = *argument.result.place;
+      argument.result = Result{};
+      argument.result.place = element(whole, Polynomial(double(k)), unit_.ast.getAsConstantArrayType(whole.type)->getElementType());
+    }
+    apply(model, one);
+  }
+  return count > 0;
+}
+
 Result Walker::apply(const project::FunctionModel& model, Invocation& invocation) {
+  if (applied_to_each(model, invocation)) return {};
   if (model.is == "element") return component(invocation, model);
   if (model.is == "elements") return built(invocation, model);
   if (model.is == "stream") return streamed(invocation);

@@ -209,6 +209,8 @@ class Walker {
   std::optional<Result> inlined(Invocation&);
   void enter_inlined(const clang::FunctionDecl*, Invocation&);
   Result called(Invocation&);
+  std::size_t vectors_in(const Argument&);
+  bool applied_to_each(const project::FunctionModel&, Invocation&);
   Result apply(const project::FunctionModel&, Invocation&);
   Result made(OperationKind, Invocation&, std::vector<Operand>, const project::FunctionModel&);
   Result put_together(OperationKind line, Invocation&, const std::vector<Operand>& lines, const project::FunctionModel&);

@@ -206,7 +206,8 @@ void Flattener::add_record(QualType type, const RecordDecl* record, std::size_t 
 bool Flattener::is_one_group(QualType type, const std::vector<Leaf>& list) {
   if (list.empty()) return false;
   const gather::TypeFacts facts = types_.of(type);
-  return facts.group && (facts.numbers == 0 || std::size_t(facts.numbers) == list.size());
+  const bool pose = facts.model && facts.shape == Shape::pose && list.size() == 16;
+  return pose || (facts.group && (facts.numbers == 0 || std::size_t(facts.numbers) == list.size()));
 }
 
 void Flattener::add_fields(const RecordDecl* record, std::size_t offset, const Group& named, Object& object) {

@@ -14,7 +14,9 @@ struct Names : RecursiveASTVisitor<Names> {
   bool whole = true;  // it compiles
   explicit Names(Closure& c) : closure(c) {}
   bool shouldVisitImplicitCode() const { return true; }
-  bool shouldVisitLambdaBody() const { return true; }
+  // Types run nothing, and those of parameters keep what was not instantiated.
+  bool TraverseTypeLoc(TypeLoc) { return true; }
+  bool TraverseNestedNameSpecifierLoc(NestedNameSpecifierLoc) { return true; }
 
   bool VisitExpr(Expr* expr) {
     whole = whole && !expr->containsErrors() && !expr->isInstantiationDependent();
@@ -34,6 +36,12 @@ struct Names : RecursiveASTVisitor<Names> {
     return whole && ended(variable->getType());
   }
 
+  void follow(FunctionDecl* function) {
+    if (const auto* constructor = dyn_cast<CXXConstructorDecl>(function))
+      for (const CXXCtorInitializer* initialiser : constructor->inits()) TraverseStmt(initialiser->getInit());
+    if (const auto* destructor = dyn_cast<CXXDestructorDecl>(function)) members_ended(destructor->getParent());
+    TraverseStmt(function->getBody());
+  }
   bool declared(ValueDecl* decl) {
     if (auto* function = dyn_cast_or_null<FunctionDecl>(decl)) closure.name(function);
     if (auto* variable = dyn_cast_or_null<VarDecl>(decl)) closure.name(variable);
@@ -96,8 +104,7 @@ std::string Closure::add(FunctionDecl* candidate) {
     FunctionDecl* definition = defined(function);
     if (!definition || definition->isInvalidDecl()) continue;
     Names names(*this);
-    names.TraverseDecl(definition);
-    if (const auto* destructor = dyn_cast<CXXDestructorDecl>(definition)) names.members_ended(destructor->getParent());
+    names.follow(definition);
     if (names.whole) {
       functions_.push_back(definition);
     } else {

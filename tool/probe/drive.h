@@ -1,0 +1,39 @@
+// A candidate as a function of numbers.
+//
+// Its objects are laid into the memory of a fresh machine, so that nothing of
+// one run is seen by the next. First it is run with everything set, at a few
+// chosen and random points, to see which numbers it reads before it writes them
+// and which it writes: those are its inputs and outputs, whatever the code says
+// of const. A group that is written only here and there keeps some of what was
+// in it, so it is an input too. What a plain pointer leads to counts as far as
+// it is touched. Then only the inputs are set; a run that reads more is refused
+// by the machine.
+//
+// Globals that are const are made by their initialisers first. A function that
+// reads another global is refused with its name.
+#pragma once
+
+#include <memory>
+#include <variant>
+#include <vector>
+
+#include "probe/emit.h"
+#include "probe/machine.h"
+#include "probe/recognise.h"
+
+namespace dextral::probe {
+
+struct Driven {
+  Signature signature;
+  Run run;
+  std::shared_ptr<std::size_t> steps;  // of the longest run so far
+};
+
+// The sets of values that the integers of a candidate are tried with; one empty
+// set where it has none.
+std::vector<std::vector<Selected>> selections(const Kit&, const Candidate&);
+
+// The kit and the candidate outlive what is returned.
+std::variant<Driven, Refusal> drive(const Kit&, const Candidate&, const std::vector<Selected>&);
+
+}  // namespace dextral::probe

@@ -1,0 +1,65 @@
+#include "probe/probe.h"
+
+#include <algorithm>
+
+#include "probe/drive.h"
+
+namespace dextral::probe {
+
+namespace {
+
+Measurement named(const Candidate& candidate, Measurement measurement) {
+  measurement.key = candidate.key;
+  measurement.name = candidate.name;
+  measurement.span = candidate.span;
+  return measurement;
+}
+
+Measurement refused(const Candidate& candidate, const std::string& why) {
+  Measurement measurement;
+  measurement.refusal = why;
+  return named(candidate, std::move(measurement));
+}
+
+Measurement measure_one(const Kit& kit, const Candidate& candidate, const std::vector<Selected>& selected) {
+  std::variant<Driven, Refusal> driven = drive(kit, candidate, selected);
+  Measurement measurement;
+  if (const auto* refusal = std::get_if<Refusal>(&driven)) {
+    measurement = refused(candidate, refusal->why);
+  } else {
+    const Driven& ready = std::get<Driven>(driven);
+    measurement = named(candidate, recognise(ready.signature, ready.run));
+    measurement.signature = ready.signature;
+    measurement.steps = *ready.steps;
+  }
+  measurement.selected = selected;
+  return measurement;
+}
+
+bool is_refused(const Measurement& measurement) { return !measurement.refusal.empty(); }
+
+// Of values that a function does not take nothing is told, where it takes others.
+std::vector<Measurement> measure_all(const Kit& kit, const Candidate& candidate) {
+  if (!candidate.refusal.empty()) return {refused(candidate, candidate.refusal)};
+  std::vector<Measurement> list;
+  for (const std::vector<Selected>& selected : selections(kit, candidate)) list.push_back(measure_one(kit, candidate, selected));
+  if (std::all_of(list.begin(), list.end(), is_refused)) list.resize(std::min<std::size_t>(list.size(), 1));
+  else std::erase_if(list, is_refused);
+  return list;
+}
+
+}  // namespace
+
+Report measure(const project::Unit& unit, const project::Project& project, const Wanted& wanted, FileTable& files) {
+  const Kit kit = emit(unit, project, wanted, files);
+  Report report;
+  report.refusal = kit.refusal;
+  if (!kit.module && !kit.candidates.empty() && report.refusal.empty()) report.refusal = "Clang emits no code for it";
+  for (const Candidate& candidate : kit.candidates) {
+    std::vector<Measurement> list = kit.module ? measure_all(kit, candidate) : std::vector{refused(candidate, report.refusal)};
+    report.measurements.insert(report.measurements.end(), list.begin(), list.end());
+  }
+  return report;
+}
+
+}  // namespace dextral::probe

@@ -67,6 +67,12 @@ struct Operand {
   std::string text;
 };
 
+// Another function that does the same with one operand inverted.
+struct Twin {
+  int operand = 0;
+  std::string name;
+};
+
 struct Operation {
   OperationKind kind = OperationKind::copy;
   ValueId result = ValueId::none;
@@ -77,6 +83,8 @@ struct Operation {
   Span span;
   std::string text;    // the expression, shortened
   std::string target;  // of copies: what it is assigned or passed to
+  std::vector<Twin> twins;
+  Span callee;         // the name of the function that a twin would replace
 };
 
 // A phrase that a value must meet.

@@ -85,9 +85,15 @@ void fields(Archive& archive, Is<Operand> auto& x) {
 }
 
 template <class Archive>
+void fields(Archive& archive, Is<Twin> auto& x) {
+  auto& [operand, name] = x;
+  archive(operand, name);
+}
+
+template <class Archive>
 void fields(Archive& archive, Is<Operation> auto& x) {
-  auto& [kind, result, operands, numbers, item, how, span, text, target] = x;
-  archive(kind, result, operands, numbers, item, how, span, text, target);
+  auto& [kind, result, operands, numbers, item, how, span, text, target, twins, callee] = x;
+  archive(kind, result, operands, numbers, item, how, span, text, target, twins, callee);
 }
 
 template <class Archive>

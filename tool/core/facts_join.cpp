@@ -34,6 +34,7 @@ class Renumber {
   void in(Operand& x) const { in(x.span); }
   void in(Operation& x) const {
     in(x.span);
+    in(x.callee);
     each(x.operands);
   }
   void in(Hold& x) const { in(x.phrase); }

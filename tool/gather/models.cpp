@@ -144,13 +144,31 @@ Result Walker::apply(const project::FunctionModel& model, Invocation& invocation
       const Value like = recorder_.at(operand.value);
       ValueId flipped = recorder_.value(like.shape, like.rotation, operand.text, like.span, like.inverse_form);
       recorder_.operation(OperationKind::transpose, flipped, {operand}, span(invocation.expr->getSourceRange()), operand.text);
+      add_twins(model, invocation, number, recorder_.function.operations.back(), 0);
       operand.value = flipped;
       operand.span = {};
     }
     operands.push_back(std::move(operand));
   }
   if (lines) return put_together(kind->second, invocation, operands, model);
-  return made(kind->second, invocation, std::move(operands), model);
+  const std::size_t first = recorder_.function.operations.size();
+  Result result = made(kind->second, invocation, std::move(operands), model);
+  auto& operations = recorder_.function.operations;
+  for (std::size_t i = 0; i < of.size() && first < operations.size(); ++i)
+    if (std::find(model.transposed.begin(), model.transposed.end(), of[i]) == model.transposed.end())
+      add_twins(model, invocation, of[i], operations[first], int(i));
+  return result;
+}
+
+// `op` does with its operand what the model does with an argument.
+void Walker::add_twins(const project::FunctionModel& model, const Invocation& invocation, int argument, Operation& op, int operand) {
+  const auto* call = dyn_cast<CallExpr>(invocation.expr);
+  if (!call || depth_ > 0) return;
+  const Expr* callee = call->getCallee()->IgnoreImplicit();
+  const auto* member = dyn_cast<MemberExpr>(callee);
+  op.callee = span(member ? SourceRange(member->getMemberLoc()) : SourceRange(callee->getEndLoc()));
+  for (auto& [number, name] : unit_.project.models.twins(model))
+    if (number == argument) op.twins.push_back({operand, std::move(name)});
 }
 
 // A matrix whose columns or rows are given: each of them has a frame of it.

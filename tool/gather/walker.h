@@ -214,6 +214,7 @@ class Walker {
   Result apply(const project::FunctionModel&, Invocation&);
   Result made(OperationKind, Invocation&, std::vector<Operand>, const project::FunctionModel&);
   Result put_together(OperationKind line, Invocation&, const std::vector<Operand>& lines, const project::FunctionModel&);
+  void add_twins(const project::FunctionModel&, const Invocation&, int argument, Operation&, int operand);
   Result streamed(Invocation&);
   Result part(Invocation&, const project::FunctionModel&);
   Result component(Invocation&, const project::FunctionModel&);

@@ -333,4 +333,48 @@ const std::vector<FunctionModel>* ModelTable::functions(const std::string& name)
   return found == functions_.end() ? nullptr : &found->second;
 }
 
+namespace {
+
+std::string owner_of(const std::string& name) {
+  const std::size_t colon = name.rfind("::");
+  return colon == std::string::npos ? "" : name.substr(0, colon);
+}
+
+std::string last_of(const std::string& name) { return name.substr(owner_of(name).empty() ? 0 : name.rfind("::") + 2); }
+
+// The one argument that just one of the two takes inverted; -1: none, or several.
+int difference(std::vector<int> a, std::vector<int> b) {
+  std::sort(a.begin(), a.end());
+  std::sort(b.begin(), b.end());
+  std::vector<int> only;
+  std::set_symmetric_difference(a.begin(), a.end(), b.begin(), b.end(), std::back_inserter(only));
+  return only.size() == 1 ? only[0] : -1;
+}
+
+// Letters that two names share at their ends.
+std::size_t likeness(const std::string& a, const std::string& b) {
+  auto same = [](char x, char y) { return std::tolower(static_cast<unsigned char>(x)) == std::tolower(static_cast<unsigned char>(y)); };
+  const auto front = std::mismatch(a.begin(), a.end(), b.begin(), b.end(), same).first - a.begin();
+  const auto back = std::mismatch(a.rbegin(), a.rend(), b.rbegin(), b.rend(), same).first - a.rbegin();
+  return std::size_t(front + back);
+}
+
+}  // namespace
+
+std::vector<std::pair<int, std::string>> ModelTable::twins(const FunctionModel& of) const {
+  std::vector<std::pair<int, std::string>> found;
+  if (last_of(of.name).starts_with("operator")) return found;
+  // Names of one library begin alike.
+  const std::string start = owner_of(of.name).empty() ? of.name.substr(0, 3) : owner_of(of.name) + "::";
+  for (auto it = functions_.lower_bound(start); it != functions_.end() && it->first.starts_with(start); ++it)
+    for (const FunctionModel& other : it->second) {
+      const bool alike = other.is == of.is && other.of == of.of && other.into == of.into && other.given == of.given;
+      const int argument = alike && owner_of(other.name) == owner_of(of.name) ? difference(other.transposed, of.transposed) : -1;
+      if (argument >= 0 && !last_of(other.name).starts_with("operator")) found.emplace_back(argument, last_of(other.name));
+    }
+  const std::string own = last_of(of.name);
+  std::stable_sort(found.begin(), found.end(), [&](const auto& a, const auto& b) { return likeness(own, a.second) > likeness(own, b.second); });
+  return found;
+}
+
 }  // namespace dextral::project

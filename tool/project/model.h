@@ -79,6 +79,10 @@ class ModelTable {
   void add(const LibraryModel&);
   const TypeModel* type(const std::string& qualified_name) const;
   const std::vector<FunctionModel>* functions(const std::string& qualified_name) const;
+  // Functions (by their last name) that do the same as this one, with one
+  // argument taken inverted or no longer inverted: that argument, and the name;
+  // the most alike first.
+  std::vector<std::pair<int, std::string>> twins(const FunctionModel&) const;
 
  private:
   std::map<std::string, TypeModel> types_;

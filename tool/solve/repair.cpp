@@ -225,7 +225,19 @@ class Search {
     if (maker != maker_.end() && (op(maker->second).kind == OperationKind::transpose || op(maker->second).kind == OperationKind::inverse)) return;
     if (operation.kind == OperationKind::hold && function_.holds.at(operation.item).contract) return;
     bool joined = operation.kind == OperationKind::hold || operation.kind == OperationKind::join;
-    add(index, joined ? 4 : 2, {{index, {operation, {i}, {-1, -1}, ""}}}, transposed(operand));
+    add(index, joined ? 4 : 2, {{index, {operation, {i}, {-1, -1}, ""}}}, by_twin(operation, i, transposed(operand)));
+  }
+
+  // A function that does the same with this operand inverted is the repair.
+  static Repair by_twin(const Operation& operation, int operand, Repair repair) {
+    for (const Twin& twin : operation.twins) {
+      if (twin.operand != operand) continue;
+      repair.call = twin.name;
+      repair.edits.clear();
+      if (operation.callee.valid()) repair.edits = {{operation.callee, twin.name}};
+      return repair;
+    }
+    return repair;
   }
 
   Repair dropped(const Operation& inverse) const {
@@ -233,10 +245,10 @@ class Search {
     Repair repair;
     repair.kind = RepairKind::drop_inverse;
     repair.subject = operand.text;
-    repair.other = inverse.text;
+    repair.other = inverse.text == operand.text ? "" : inverse.text;
     repair.rotation = rotates(operand.value);
-    if (operand.span.valid() && inverse.span.valid()) repair.edits = {{inverse.span, operand.text}};
-    return repair;
+    if (operand.span.valid() && inverse.span.valid() && !repair.other.empty()) repair.edits = {{inverse.span, operand.text}};
+    return by_twin(inverse, 0, std::move(repair));
   }
 
   void drop(std::uint32_t index) {

@@ -33,6 +33,7 @@ struct Repair {
   Span span;             // the operation that it mends
   std::string subject;   // the expression that it speaks of
   std::string other;
+  std::string call;       // a function that does just this, to call instead; or empty
   bool rotation = false;  // the subject is a rotation or a pose
   std::vector<Edit> edits;  // empty: no edit is safe to offer
 };

@@ -69,6 +69,7 @@ std::string words(const Reason& reason) {
 std::string words(const solve::Repair& repair) {
   const std::string subject = quoted(repair.subject), other = quoted(repair.other);
   const bool unnamed = repair.other.empty();
+  if (!repair.call.empty()) return "call " + quoted(repair.call) + " instead";
   switch (repair.kind) {
     case solve::RepairKind::none:
       return "";

@@ -266,13 +266,28 @@ std::vector<std::size_t> Flattener::extents(QualType type) {
   return sizes;
 }
 
+// A class around one member, as a pose around its matrix, lies as that does.
+QualType Flattener::storage(QualType type) {
+  for (int depth = 0; depth < 4; ++depth) {
+    const gather::TypeFacts facts = types_.of(type);
+    const RecordDecl* record = type->getAsRecordDecl();
+    record = record ? record->getDefinition() : nullptr;
+    if (!record || (facts.model && !facts.model->rows.empty())) return type;
+    if (std::distance(record->field_begin(), record->field_end()) != 1) return type;
+    type = record->field_begin()->getType();
+  }
+  return type;
+}
+
 void Flattener::describe(QualType type, Group& group) {
   const gather::TypeFacts facts = types_.of(type);
-  const CXXRecordDecl* record = type->getAsCXXRecordDecl();
   group.quaternion = group.count == 4 && ((facts.model && facts.shape == Shape::quaternion) || says_quaternion(type.getAsString()));
   std::vector<std::size_t> sizes = extents(type);
-  if (facts.model && record && !facts.model->rows.empty()) {
-    auto rows = constant_of(record, facts.model->rows, context_), columns = constant_of(record, facts.model->columns, context_);
+  QualType inner = storage(type);
+  const gather::TypeFacts stored = types_.of(inner);
+  if (stored.model && !stored.model->rows.empty()) {
+    const CXXRecordDecl* record = inner->getAsCXXRecordDecl();
+    auto rows = constant_of(record, stored.model->rows, context_), columns = constant_of(record, stored.model->columns, context_);
     auto row_major = constant_of(record, "IsRowMajor", context_);
     if (rows && columns && row_major && *rows > 0 && *columns > 0) {
       sizes = {std::size_t(*rows), std::size_t(*columns)};

@@ -28,6 +28,7 @@ class Flattener {
   bool leaves(clang::QualType, std::size_t offset, std::vector<Leaf>&);
   void describe(clang::QualType, Group&);
   std::vector<std::size_t> extents(clang::QualType);
+  clang::QualType storage(clang::QualType);
   clang::QualType most_derived(clang::QualType);
   bool is_complete(clang::QualType);
 

@@ -21,6 +21,17 @@ Measurement refused(const Candidate& candidate, const std::string& why) {
   return named(candidate, std::move(measurement));
 }
 
+// A selector takes no number of a trial, but has a name for people.
+void add_selectors(const Candidate& candidate, Measurement& measurement) {
+  for (const Formal& formal : candidate.formals)
+    for (const Bundle& bundle : formal.object.bundles)
+      for (const Selected& one : measurement.selected)
+        if (bundle.group.integer && one.formal == bundle.group.formal) {
+          measurement.signature.inputs.push_back(bundle.group);
+          measurement.signature.inputs.back().count = 0;
+        }
+}
+
 Measurement measure_one(const Kit& kit, const Candidate& candidate, const std::vector<Selected>& selected) {
   std::variant<Driven, Refusal> driven = drive(kit, candidate, selected);
   Measurement measurement;
@@ -33,6 +44,7 @@ Measurement measure_one(const Kit& kit, const Candidate& candidate, const std::v
     measurement.steps = *ready.steps;
   }
   measurement.selected = selected;
+  add_selectors(candidate, measurement);
   return measurement;
 }
 

@@ -267,21 +267,39 @@ class Search {
     add(index, 1, {{index, {edited, {}, {-1, -1}, ""}}}, dropped(inverse));
   }
 
-  // A declared variable of the same shape whose name shares a beginning.
+  // What each variable holds before an operation, newest version first.
+  std::vector<std::pair<std::string, ValueId>> variables(std::uint32_t index) const {
+    std::vector<std::pair<std::string, ValueId>> list;
+    auto add = [&](const std::string& name, ValueId id) {
+      const bool known = std::any_of(list.begin(), list.end(), [&](const auto& entry) { return entry.first == name; });
+      if (!name.empty() && is_primary(name) && id != ValueId::none && !known) list.emplace_back(name, id);
+    };
+    for (std::uint32_t i = index; i-- > 0;) {
+      if (op(i).kind == OperationKind::copy) add(op(i).target, op(i).result);
+      if (op(i).kind != OperationKind::call) continue;
+      for (const Binding& binding : function_.calls.at(op(i).item).bindings)
+        if (auto* id = std::get_if<ValueId>(&binding.after)) add(binding.formal == "return" ? "" : binding.text, *id);
+    }
+    for (const Declaration& declaration : function_.declarations)
+      if (!(declaration.span > op(index).span)) add(declaration.name, declaration.value);
+    return list;
+  }
+
+  // Another variable of the same shape where this one stands.
   void other_variable(std::uint32_t index, int i) {
     const Operand& operand = op(index).operands[std::size_t(i)];
     if (operand.value == ValueId::none || !is_primary(operand.text)) return;
     int tried = 0;
-    for (const Declaration& declaration : function_.declarations) {
-      if (declaration.value == ValueId::none || declaration.value == operand.value || declaration.name == operand.text) continue;
-      if (value(declaration.value).shape != shape(operand) || declaration.span > op(index).span || ++tried > 8) continue;
+    for (const auto& [name, id] : variables(index)) {
+      if (id == operand.value || name == operand.text || value(id).shape != shape(operand)) continue;
+      if (++tried > 8) return;
       Operation edited = op(index);
-      edited.operands[std::size_t(i)].value = declaration.value;
+      edited.operands[std::size_t(i)].value = id;
       Repair repair;
       repair.kind = RepairKind::other_variable;
       repair.subject = operand.text;
-      repair.other = declaration.name;
-      if (operand.span.valid()) repair.edits = {{operand.span, declaration.name}};
+      repair.other = name;
+      if (operand.span.valid()) repair.edits = {{operand.span, name}};
       add(index, 5, {{index, {edited, {}, {-1, -1}, ""}}}, repair);
     }
   }

@@ -1,5 +1,6 @@
 #include "probe/drive.h"
 
+#include <llvm/Demangle/Demangle.h>
 #include <llvm/IR/Function.h>
 #include <llvm/IR/InstrTypes.h>
 #include <llvm/IR/Module.h>
@@ -163,8 +164,10 @@ bool is_narrow(const Kit& kit, const Candidate& candidate) {
   return function && narrows(*function, seen);
 }
 
+std::string read_global(const std::string& symbol) { return "reads the global " + llvm::demangle(symbol) + ", whose value is not known"; }
+
 std::string why_not(const Candidate& candidate, const Plan& plan, const Touched& touched) {
-  if (!touched.globals.empty()) return "reads the global " + *touched.globals.begin() + ", which is not fixed";
+  if (!touched.globals.empty()) return read_global(*touched.globals.begin());
   if (plan.outputs.empty()) return "writes no numbers";
   if (plan.outputs.size() > kMostOutputs) return "gives " + std::to_string(plan.outputs.size()) + " numbers";
   if (plan.inputs.size() > kMostInputs) return "takes " + std::to_string(plan.inputs.size()) + " numbers";
@@ -191,7 +194,7 @@ std::variant<Driven, Refusal> drive(const Kit& kit, const Candidate& candidate, 
     *longest = std::max(*longest, outcome.steps);
     *total += outcome.steps;
     if (!outcome.refusal.empty()) return Refusal{outcome.refusal};
-    if (!outcome.globals.empty()) return Refusal{"reads the global " + outcome.globals.front() + ", which is not fixed"};
+    if (!outcome.globals.empty()) return Refusal{read_global(outcome.globals.front())};
     Numbers results;
     for (const Slot& slot : plan.outputs) {
       if (!outcome.after[slot.formal][slot.leaf]) return Refusal{"leaves a result unset"};

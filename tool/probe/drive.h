@@ -9,8 +9,8 @@
 // it is touched. Then only the inputs are set; a run that reads more is refused
 // by the machine.
 //
-// Globals that are const are made by their initialisers first. A function that
-// reads another global is refused with its name.
+// A function that reads a global whose value is not constant is refused with its
+// name.
 #pragma once
 
 #include <memory>

@@ -1,9 +1,6 @@
 #include "probe/drive_evaluate.h"
 
-#include <llvm/IR/Constants.h>
 #include <llvm/IR/Function.h>
-#include <llvm/IR/InstrTypes.h>
-#include <llvm/IR/Instructions.h>
 #include <llvm/IR/Module.h>
 
 #include <cstring>
@@ -96,7 +93,6 @@ class Evaluation {
   }
 
   Outcome run() {
-    initialise();
     if (lay_out() && call()) collect();
     return std::move(outcome_);
   }
@@ -105,19 +101,6 @@ class Evaluation {
   bool refuse(const std::string& why) {
     outcome_.refusal = why;
     return false;
-  }
-
-  // A constant that cannot be made stays unset; who reads it is refused.
-  void initialise() {
-    const llvm::GlobalVariable* list = kit_.module->getGlobalVariable("llvm.global_ctors", true);
-    const auto* entries = list && list->hasInitializer() ? llvm::dyn_cast<llvm::ConstantArray>(list->getInitializer()) : nullptr;
-    if (!entries) return;
-    for (const llvm::Use& entry : entries->operands())
-      if (const auto* whole = llvm::dyn_cast<llvm::Function>(llvm::cast<llvm::ConstantStruct>(entry)->getOperand(1)))
-        for (const llvm::BasicBlock& block : *whole)
-          for (const llvm::Instruction& instruction : block)
-            if (const auto* call = llvm::dyn_cast<llvm::CallInst>(&instruction); call && call->getCalledFunction() && call->arg_empty())
-              (void)machine_.call(*call->getCalledFunction(), {});
   }
 
   bool in_memory(const Formal& formal) const { return formal.behind_pointer || formal.passing.kind == Passing::Kind::address; }
@@ -175,7 +158,7 @@ class Evaluation {
     auto answer = machine_.call(*function, arguments());
     outcome_.steps = machine_.steps();
     for (const auto& [name, place] : machine_.globals_read())
-      if (!kit_.fixed.contains(name)) outcome_.globals.push_back(name);
+      outcome_.globals.push_back(name);
     if (auto* refusal = std::get_if<Refusal>(&answer)) return refuse(refusal->why);
     return !candidate_.result || take_result(std::get<Word>(answer));
   }

@@ -3,6 +3,7 @@
 #include <algorithm>
 
 #include "probe/drive.h"
+#include "probe/drive_constants.h"
 
 namespace dextral::probe {
 
@@ -63,7 +64,8 @@ std::vector<Measurement> measure_all(const Kit& kit, const Candidate& candidate)
 }  // namespace
 
 Report measure(const project::Unit& unit, const project::Project& project, const Wanted& wanted, FileTable& files) {
-  const Kit kit = emit(unit, project, wanted, files);
+  Kit kit = emit(unit, project, wanted, files);
+  fix_constants(kit);
   Report report;
   report.refusal = kit.refusal;
   if (!kit.module && !kit.candidates.empty() && report.refusal.empty()) report.refusal = "Clang emits no code for it";

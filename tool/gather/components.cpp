@@ -293,8 +293,20 @@ class Assembly {
 
 ValueId assemble(Recorder& recorder, const Group& group) { return Assembly(recorder, group).run(); }
 
+namespace {
+
+bool of_no_vector(const Polynomial& p) {
+  return p.known() && std::all_of(p.terms().begin(), p.terms().end(), [](const auto& term) {
+           return std::all_of(term.first.begin(), term.first.end(), [](const Atom& atom) { return atom.opaque(); });
+         });
+}
+
+}  // namespace
+
 bool is_literal(const std::vector<Polynomial>& elements) {
-  return std::all_of(elements.begin(), elements.end(), [](const Polynomial& p) { return p.constant().has_value(); });
+  const auto free = std::count_if(elements.begin(), elements.end(), [](const Polynomial& p) { return !p.constant(); });
+  if (free == 0) return true;
+  return elements.size() == 3 && free == 1 && std::all_of(elements.begin(), elements.end(), of_no_vector);
 }
 
 std::optional<std::pair<ValueId, ValueId>> as_dot(const Recorder& recorder, const Polynomial& p) {

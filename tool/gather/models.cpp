@@ -104,6 +104,15 @@ bool Walker::applied_to_each(const project::FunctionModel& model, Invocation& in
   return count > 0;
 }
 
+// `dt * Vec3(1, 0, 0)` belongs to any frame, as what it is made from does.
+bool Walker::stays_literal(OperationKind kind, Invocation& invocation, const std::vector<int>& of) {
+  if (kind != OperationKind::copy && kind != OperationKind::sum && kind != OperationKind::difference) return false;
+  return !of.empty() && std::all_of(of.begin(), of.end(), [&](int number) {
+    Argument* argument = this->argument(invocation, number);
+    return argument && literal(argument->result);
+  });
+}
+
 Result Walker::apply(const project::FunctionModel& model, Invocation& invocation) {
   if (applied_to_each(model, invocation)) return {};
   if (model.is == "element") return component(invocation, model);
@@ -130,6 +139,13 @@ Result Walker::apply(const project::FunctionModel& model, Invocation& invocation
   std::vector<int> of = model.of;
   if (of.empty())
     for (std::size_t i = 0; i < invocation.arguments.size(); ++i) of.push_back(int(i) + (invocation.has_object ? 0 : 1));
+  if (stays_literal(kind->second, invocation, of)) {
+    Result result;
+    result.literal = true;
+    if (model.into == project::kReturn) return result;
+    store(invocation, model, ValueId::none, true);
+    return {};
+  }
   std::vector<Operand> operands;
   for (int number : of) {
     Argument* argument = this->argument(invocation, number);

@@ -209,6 +209,7 @@ class Walker {
   std::optional<Result> inlined(Invocation&);
   void enter_inlined(const clang::FunctionDecl*, Invocation&);
   Result called(Invocation&);
+  bool stays_literal(OperationKind, Invocation&, const std::vector<int>& of);
   std::size_t vectors_in(const Argument&);
   bool applied_to_each(const project::FunctionModel&, Invocation&);
   Result apply(const project::FunctionModel&, Invocation&);

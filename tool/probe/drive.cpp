@@ -50,11 +50,11 @@ void merge(std::vector<std::vector<bool>>& all, const std::vector<std::vector<bo
     for (std::size_t j = 0; j < all[i].size(); ++j) all[i][j] = both ? all[i][j] && one[i][j] : all[i][j] || one[i][j];
 }
 
-Touched touch(const Kit& kit, const Candidate& candidate, const Setting& integers) {
+Touched touch(Stage& stage, const Setting& integers) {
   Touched touched;
   touched.returns_argument = true;
   for (std::size_t point = 0; point < kTouchingPoints; ++point) {
-    const Outcome outcome = evaluate(kit, candidate, touching_point(candidate, integers, point));
+    const Outcome outcome = stage.run(touching_point(stage.candidate(), integers, point));
     touched.globals.insert(outcome.globals.begin(), outcome.globals.end());
     if (!outcome.refusal.empty()) {
       if (touched.refusal.empty()) touched.refusal = outcome.refusal;
@@ -178,19 +178,20 @@ std::string why_not(const Candidate& candidate, const Plan& plan, const Touched&
 
 std::variant<Driven, Refusal> drive(const Kit& kit, const Candidate& candidate, const std::vector<Selected>& selected) {
   const Setting integers = integers_of(candidate, selected);
-  const Touched touched = touch(kit, candidate, integers);
+  auto stage = std::make_shared<Stage>(kit, candidate);
+  const Touched touched = touch(*stage, integers);
   if (touched.runs == 0) return Refusal{touched.refusal};
   Plan plan = plan_of(candidate, touched, integers);
   plan.signature.single_precision = is_narrow(kit, candidate);
   if (std::string why = why_not(candidate, plan, touched); !why.empty()) return Refusal{why};
   Driven driven{plan.signature, {}, std::make_shared<std::size_t>(0)};
   auto total = std::make_shared<std::size_t>(0);
-  driven.run = [&kit, &candidate, plan, longest = driven.steps, total](const Numbers& numbers) -> std::variant<Numbers, Refusal> {
+  driven.run = [stage, plan, longest = driven.steps, total](const Numbers& numbers) -> std::variant<Numbers, Refusal> {
     if (numbers.size() != plan.inputs.size()) return Refusal{"is given other numbers than it takes"};
     if (*total > kMostSteps) return Refusal{"takes more than " + std::to_string(kMostSteps) + " steps in all"};
     Setting setting = plan.integers;
     for (std::size_t i = 0; i < numbers.size(); ++i) setting[plan.inputs[i].formal][plan.inputs[i].leaf] = numbers[i];
-    const Outcome outcome = evaluate(kit, candidate, setting);
+    const Outcome outcome = stage->run(setting);
     *longest = std::max(*longest, outcome.steps);
     *total += outcome.steps;
     if (!outcome.refusal.empty()) return Refusal{outcome.refusal};
@@ -207,7 +208,8 @@ std::variant<Driven, Refusal> drive(const Kit& kit, const Candidate& candidate, 
 
 std::vector<std::vector<Selected>> selections(const Kit& kit, const Candidate& candidate) {
   // An integer in memory counts where it is read; one by value always may.
-  const Touched touched = touch(kit, candidate, integers_of(candidate, {}));
+  Stage stage(kit, candidate);
+  const Touched touched = touch(stage, integers_of(candidate, {}));
   std::vector<const Bundle*> chosen;
   for (std::size_t i = 0; i < candidate.formals.size(); ++i) {
     std::size_t leaf = 0;

@@ -1,7 +1,7 @@
 // A candidate as a function of numbers.
 //
-// Its objects are laid into the memory of a fresh machine, so that nothing of
-// one run is seen by the next. First it is run with everything set, at a few
+// Its objects are laid anew into the memory of the machine for each run, so that
+// nothing of one run is seen by the next. First it is run with everything set, at a few
 // chosen and random points, to see which numbers it reads before it writes them
 // and which it writes: those are its inputs and outputs, whatever the code says
 // of const. A group that is written only here and there keeps some of what was

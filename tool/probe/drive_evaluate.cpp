@@ -11,6 +11,8 @@ namespace {
 
 using Bytes = std::vector<std::byte>;
 
+constexpr std::size_t kRunsOfMachine = 256;  // objects of past runs stay in its memory
+
 Bytes bytes_of(const Leaf& leaf, double value) {
   Bytes bytes(leaf.bytes);
   if (leaf.number == Number::double_float) {
@@ -82,8 +84,8 @@ void put(const Word& word, const Piece& piece, Bytes& bytes) {
 
 class Evaluation {
  public:
-  Evaluation(const Kit& kit, const Candidate& candidate, const Setting& setting)
-      : kit_(kit), candidate_(candidate), setting_(setting), machine_(*kit.module, Bounds{}) {
+  Evaluation(const Kit& kit, const Candidate& candidate, const Setting& setting, Machine& machine)
+      : kit_(kit), candidate_(candidate), setting_(setting), machine_(machine) {
     outcome_.after = empty_setting(candidate);
     for (const Values& values : outcome_.after) {
       outcome_.read.emplace_back(values.size());
@@ -216,7 +218,7 @@ class Evaluation {
   const Candidate& candidate_;
   const Setting& setting_;
   std::optional<std::pair<std::size_t, std::size_t>> shown_;  // formal, offset
-  Machine machine_;
+  Machine& machine_;
   Outcome outcome_;
   std::vector<Address> places_;  // 0: not in memory
 };
@@ -239,8 +241,9 @@ Setting empty_setting(const Candidate& candidate) {
   return setting;
 }
 
-Outcome evaluate(const Kit& kit, const Candidate& candidate, const Setting& setting) {
-  return Evaluation(kit, candidate, setting).run();
+Outcome Stage::run(const Setting& setting) {
+  if (!machine_ || ++runs_ % kRunsOfMachine == 0) machine_ = std::make_unique<Machine>(*kit_.module, Bounds{});
+  return Evaluation(kit_, candidate_, setting, *machine_).run();
 }
 
 }  // namespace dextral::probe

@@ -1,6 +1,11 @@
-// One run of a candidate in a fresh machine.
+// One run of a candidate, on objects of its own.
+//
+// A machine is kept for many runs, since it prepares code only once. No run can
+// write to what the next one reads: it gets new objects, and the machine lets
+// nothing write to globals.
 #pragma once
 
+#include <memory>
 #include <optional>
 #include <string>
 #include <vector>
@@ -29,6 +34,19 @@ Setting empty_setting(const Candidate&);
 const Formal& formal_at(const Candidate&, std::size_t);  // the result last
 std::size_t formal_count(const Candidate&);              // with the result
 
-Outcome evaluate(const Kit&, const Candidate&, const Setting&);
+class Stage {
+ public:
+  // Both outlive it.
+  Stage(const Kit& kit, const Candidate& candidate) : kit_(kit), candidate_(candidate) {}
+  Outcome run(const Setting&);
+  const Kit& kit() const { return kit_; }
+  const Candidate& candidate() const { return candidate_; }
+
+ private:
+  const Kit& kit_;
+  const Candidate& candidate_;
+  std::unique_ptr<Machine> machine_;
+  std::size_t runs_ = 0;
+};
 
 }  // namespace dextral::probe

@@ -29,7 +29,7 @@ class Kept {
     }
     refusal = kit_.candidates[0].refusal;
     if (!refusal.empty()) return;
-    auto driven = drive(kit_, kit_.candidates[0], selected);
+    auto driven = drive(std::make_shared<Stage>(kit_, kit_.candidates[0]), selected);
     if (auto* why = std::get_if<Refusal>(&driven)) refusal = why->why;
     else driven_ = std::move(std::get<Driven>(driven));
     signature = said(driven_.signature.inputs) + " -> " + said(driven_.signature.outputs);
@@ -173,7 +173,8 @@ TEST(Drive, SelectorsAsked) {
   SourceFile source("a.c", "double f(int axis, const double* v) { switch (axis) { case 0: return v[0]; case 2: return v[2]; } return v[1]; }");
   const Kit kit = emit(source.unit(), source.project, {}, source.files);
   ASSERT_EQ(kit.candidates.size(), 1u);
-  const auto list = selections(kit, kit.candidates[0]);
+  Stage stage(kit, kit.candidates[0]);
+  const auto list = selections(stage);
   ASSERT_EQ(list.size(), 2u);
   EXPECT_EQ(list[1][0].value, 2);
 }

@@ -8,7 +8,6 @@
 #include <algorithm>
 #include <set>
 
-#include "probe/drive_evaluate.h"
 #include "probe/drive_points.h"
 
 namespace dextral::probe {
@@ -176,13 +175,13 @@ std::string why_not(const Candidate& candidate, const Plan& plan, const Touched&
 
 }  // namespace
 
-std::variant<Driven, Refusal> drive(const Kit& kit, const Candidate& candidate, const std::vector<Selected>& selected) {
+std::variant<Driven, Refusal> drive(const std::shared_ptr<Stage>& stage, const std::vector<Selected>& selected) {
+  const Candidate& candidate = stage->candidate();
   const Setting integers = integers_of(candidate, selected);
-  auto stage = std::make_shared<Stage>(kit, candidate);
   const Touched touched = touch(*stage, integers);
   if (touched.runs == 0) return Refusal{touched.refusal};
   Plan plan = plan_of(candidate, touched, integers);
-  plan.signature.single_precision = is_narrow(kit, candidate);
+  plan.signature.single_precision = is_narrow(stage->kit(), candidate);
   if (std::string why = why_not(candidate, plan, touched); !why.empty()) return Refusal{why};
   Driven driven{plan.signature, {}, std::make_shared<std::size_t>(0)};
   auto total = std::make_shared<std::size_t>(0);
@@ -206,9 +205,9 @@ std::variant<Driven, Refusal> drive(const Kit& kit, const Candidate& candidate, 
   return driven;
 }
 
-std::vector<std::vector<Selected>> selections(const Kit& kit, const Candidate& candidate) {
+std::vector<std::vector<Selected>> selections(Stage& stage) {
+  const Candidate& candidate = stage.candidate();
   // An integer in memory counts where it is read; one by value always may.
-  Stage stage(kit, candidate);
   const Touched touched = touch(stage, integers_of(candidate, {}));
   std::vector<const Bundle*> chosen;
   for (std::size_t i = 0; i < candidate.formals.size(); ++i) {

@@ -17,8 +17,7 @@
 #include <variant>
 #include <vector>
 
-#include "probe/emit.h"
-#include "probe/machine.h"
+#include "probe/drive_evaluate.h"
 #include "probe/recognise.h"
 
 namespace dextral::probe {
@@ -31,9 +30,8 @@ struct Driven {
 
 // The sets of values that the integers of a candidate are tried with; one empty
 // set where it has none.
-std::vector<std::vector<Selected>> selections(const Kit&, const Candidate&);
+std::vector<std::vector<Selected>> selections(Stage&);
 
-// The kit and the candidate outlive what is returned.
-std::variant<Driven, Refusal> drive(const Kit&, const Candidate&, const std::vector<Selected>&);
+std::variant<Driven, Refusal> drive(const std::shared_ptr<Stage>&, const std::vector<Selected>&);
 
 }  // namespace dextral::probe

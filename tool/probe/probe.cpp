@@ -33,8 +33,9 @@ void add_selectors(const Candidate& candidate, Measurement& measurement) {
         }
 }
 
-Measurement measure_one(const Kit& kit, const Candidate& candidate, const std::vector<Selected>& selected) {
-  std::variant<Driven, Refusal> driven = drive(kit, candidate, selected);
+Measurement measure_one(const std::shared_ptr<Stage>& stage, const std::vector<Selected>& selected) {
+  const Candidate& candidate = stage->candidate();
+  std::variant<Driven, Refusal> driven = drive(stage, selected);
   Measurement measurement;
   if (const auto* refusal = std::get_if<Refusal>(&driven)) {
     measurement = refused(candidate, refusal->why);
@@ -55,7 +56,8 @@ bool is_refused(const Measurement& measurement) { return !measurement.refusal.em
 std::vector<Measurement> measure_all(const Kit& kit, const Candidate& candidate) {
   if (!candidate.refusal.empty()) return {refused(candidate, candidate.refusal)};
   std::vector<Measurement> list;
-  for (const std::vector<Selected>& selected : selections(kit, candidate)) list.push_back(measure_one(kit, candidate, selected));
+  auto stage = std::make_shared<Stage>(kit, candidate);
+  for (const std::vector<Selected>& selected : selections(*stage)) list.push_back(measure_one(stage, selected));
   if (std::all_of(list.begin(), list.end(), is_refused)) list.resize(std::min<std::size_t>(list.size(), 1));
   else std::erase_if(list, is_refused);
   return list;

@@ -37,6 +37,7 @@ struct Value {
   std::string text;          // as the code names it
   std::string inverse_form;  // how the code inverts it: "{}.transpose()"; empty: unknown
   Span span;
+  bool of_rotation = false;  // a vector made of the numbers of a rotation: what it is summed with turns
 };
 
 enum class OperationKind {
@@ -87,6 +88,11 @@ struct Operation {
   Span callee;         // the name of the function that a twin would replace
 };
 
+// Does the result have the frames of the operands?
+inline bool keeps_kind(OperationKind kind) {
+  return kind == OperationKind::copy || kind == OperationKind::sum || kind == OperationKind::difference || kind == OperationKind::cross;
+}
+
 // A phrase that a value must meet.
 struct Hold {
   Quantity quantity;
@@ -121,6 +127,7 @@ struct Binding {
   std::variant<ValueId, Snapshot> after{ValueId::none};  // where the callee may write
   Span span;
   std::string text;
+  std::string object;  // path of the argument, where it is an object
 };
 
 struct Call {

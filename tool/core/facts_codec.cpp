@@ -74,8 +74,8 @@ void fields(Archive& archive, Is<Acceptance> auto& x) {
 
 template <class Archive>
 void fields(Archive& archive, Is<Value> auto& x) {
-  auto& [shape, rotation, text, inverse_form, span] = x;
-  archive(shape, rotation, text, inverse_form, span);
+  auto& [shape, rotation, text, inverse_form, span, of_rotation] = x;
+  archive(shape, rotation, text, inverse_form, span, of_rotation);
 }
 
 template <class Archive>
@@ -116,8 +116,8 @@ void fields(Archive& archive, Is<Snapshot> auto& x) {
 
 template <class Archive>
 void fields(Archive& archive, Is<Binding> auto& x) {
-  auto& [formal, before, after, span, text] = x;
-  archive(formal, before, after, span, text);
+  auto& [formal, before, after, span, text, object] = x;
+  archive(formal, before, after, span, text, object);
 }
 
 template <class Archive>

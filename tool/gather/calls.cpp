@@ -332,6 +332,7 @@ void Walker::bind(Call& call, const std::string& formal, Argument& argument) {
   }
   binding.span = operand.span;
   binding.text = operand.text;
+  if (result.place) binding.object = result.place->path;
   if (argument.writable && result.place) {
     const Place& place = *result.place;
     if (group && place.offset == -1) {

@@ -291,7 +291,28 @@ class Assembly {
 
 }  // namespace
 
-ValueId assemble(Recorder& recorder, const Group& group) { return Assembly(recorder, group).run(); }
+namespace {
+
+// (q.x, q.y, q.z): a vector, but of what is turned by it nothing keeps its frame.
+bool of_quaternion(const Recorder& recorder, const std::vector<Polynomial>& elements) {
+  bool any = false;
+  for (const Polynomial& p : elements)
+    for (const auto& [monomial, coefficient] : p.terms())
+      for (const Atom& atom : monomial) {
+        if (atom.opaque()) continue;
+        if (recorder.function.values[std::size_t(atom.value)].shape != Shape::quaternion) return false;
+        any = true;
+      }
+  return any;
+}
+
+}  // namespace
+
+ValueId assemble(Recorder& recorder, const Group& group) {
+  const ValueId id = Assembly(recorder, group).run();
+  if (group.elements.size() == 3 && of_quaternion(recorder, group.elements)) recorder.at(id).of_rotation = true;
+  return id;
+}
 
 namespace {
 

@@ -200,7 +200,7 @@ class Attacher {
     for (std::size_t i = 0; i < decls.size(); ++i) {
       say(decls[i], said);
       if (together)
-        phrases_.components_[decls[i]->getLocation().getRawEncoding()] = {group + "}", role(decls[i]->getNameAsString(), int(i)), int(decls.size())};
+        phrases_.components_[decls[i]->getLocation().getRawEncoding()] = {group + "}", role(decls[i]->getNameAsString(), int(i)), int(decls.size()), true};
     }
   }
 

@@ -31,6 +31,7 @@ struct Slot3 {
   std::string group;  // name that stands for the group
   int index = 0;
   int count = 0;
+  bool said = false;  // by a phrase on all of them, not by their names alone
 };
 
 class Phrases {

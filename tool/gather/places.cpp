@@ -101,7 +101,7 @@ std::optional<Place> Walker::member(const Place& base, const FieldDecl* field) {
   place.type = field->getType();
   const std::optional<Slot3> slot = unit_.phrases.component(field);
   // A record of nothing but numbers is one group, unless its fields form groups of their own.
-  if (facts.group && !facts.model && !(slot && slot->count != facts.numbers)) {
+  if (facts.group && !facts.model && !(slot && slot->said && slot->count != facts.numbers)) {
     int index = unit_.types.index(field);
     if (index < 0) return std::nullopt;
     if (place.whole.isNull()) place.whole = base.type;
@@ -183,6 +183,12 @@ std::vector<Said> Walker::said_of_fields(const Place& place) const {
   return all;
 }
 
+// The object whose frames `own` speaks of: in a method its own.
+std::string Walker::owner_of(const Place& place) const {
+  if (!place.owner.empty()) return place.owner;
+  return this_ ? this_->path : isa<CXXMethodDecl>(function_) ? "this" : "";
+}
+
 void Walker::hold(ValueId id, const Place& place, SourceRange range, bool contract, const std::string& text) {
   if (id == ValueId::none) return;
   for (Said& said : said_of(place)) {
@@ -192,7 +198,7 @@ void Walker::hold(ValueId id, const Place& place, SourceRange range, bool contra
     if (shape == Shape::number || shape == Shape::object || shape == Shape::container) continue;
     if (said.source == dextral::Source::named && frames.columns.known() == (shape == Shape::vector)) continue;
     if (frames.columns.known() && shape == Shape::vector) continue;
-    Hold hold{owned(said.quantity, place.owner), said.source, said.text, said.span, place.decl ? place.decl->getNameAsString() : text,
+    Hold hold{owned(said.quantity, owner_of(place)), said.source, said.text, said.span, place.decl ? place.decl->getNameAsString() : text,
               contract && said.source == dextral::Source::declared, -1, ""};
     recorder_.hold(id, std::move(hold), span(range), text);
   }

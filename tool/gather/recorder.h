@@ -27,6 +27,7 @@ class Recorder {
     op.span = span;
     op.text = std::move(text);
     function.operations.push_back(std::move(op));
+    carry_rotation(function.operations.back());
     return function.operations.back();
   }
 
@@ -49,6 +50,13 @@ class Recorder {
   }
 
  private:
+  // What is made of a vector of a rotation's numbers is one too.
+  void carry_rotation(const Operation& op) {
+    if (op.result == ValueId::none || !keeps_kind(op.kind)) return;
+    for (const Operand& operand : op.operands)
+      if (operand.value != ValueId::none && at(operand.value).of_rotation) at(op.result).of_rotation = true;
+  }
+
   std::map<std::pair<std::string, std::uint32_t>, ValueId> readings_;
 };
 

@@ -150,6 +150,7 @@ class Walker {
   ValueId settle(const std::string& path);
   void hold(ValueId, const Place&, clang::SourceRange, bool contract, const std::string& text);
   std::vector<Said> said_of(const Place&) const;
+  std::string owner_of(const Place&) const;
   std::vector<Said> said_of_fields(const Place&) const;
   bool is_literal_group(const Place&) const;
   bool frameless(const Place&) const;

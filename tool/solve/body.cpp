@@ -118,9 +118,18 @@ class Body {
       if (!join(op)) joins_.emplace_back(index_, &op);
       return;
     }
+    if (turns(op)) return;
     for (const Agreement& agreement : law(op.kind, op.operands.size()))
       if (!unite(slot(op, agreement.left), slot(op, agreement.right), agreement.left.operand, agreement.right.operand))
         return;
+  }
+
+  // v + 2 w e x v + 2 e x (e x v), with e the vector of a quaternion, is a map
+  // written out: nothing of it keeps a frame.
+  bool turns(const Operation& op) const {
+    return keeps_kind(op.kind) && std::any_of(op.operands.begin(), op.operands.end(), [&](const Operand& operand) {
+             return operand.value != ValueId::none && function_.values[std::size_t(operand.value)].of_rotation;
+           });
   }
 
   Frame settled(Frame frame) const { return frame.variable ? frame : setting_.frames.orientation(frame); }
@@ -239,9 +248,8 @@ class Body {
     if (!frame.own || frame.owner.empty()) return out_.sheet.constant(frame);
     for (const Binding& binding : call.bindings) {
       if (!below(frame.owner, binding.formal)) continue;
-      auto* snapshot = std::get_if<Snapshot>(&binding.before);
-      if (!snapshot || snapshot->path.empty()) break;
-      frame.owner = snapshot->path + frame.owner.substr(binding.formal.size());
+      if (binding.object.empty()) break;
+      frame.owner = binding.object + frame.owner.substr(binding.formal.size());
       return out_.sheet.constant(frame);
     }
     return free_node(free, "own " + frame.name + "@" + frame.tag + " of " + frame.owner);

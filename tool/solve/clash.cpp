@@ -126,11 +126,17 @@ Clash clash_of(const Function& function, Sheeted& sheeted, const Conflict& confl
   auto prove = [&](NodeId side) {
     std::vector<Edge> chain = sheet.path(side, sheet.constant_of(side));
     for (const Edge& edge : chain) clash.certainty = weaker(clash.certainty, edge.certainty);
-    clash.certainty = weaker(clash.certainty, through_matrices(function, sheeted, chain));
-    return reasons(function, chain);
+    return std::pair(reasons(function, chain), chain);
   };
-  clash.left_proof = prove(conflict.left);
-  clash.right_proof = prove(conflict.right);
+  auto [left_proof, chain] = prove(conflict.left);
+  auto [right_proof, right_chain] = prove(conflict.right);
+  clash.left_proof = std::move(left_proof);
+  clash.right_proof = std::move(right_proof);
+  // From the one constant to the other, through the place where they meet.
+  std::reverse(chain.begin(), chain.end());
+  chain.push_back({conflict.left, conflict.right, conflict.operation, conflict.certainty, conflict.via});
+  chain.insert(chain.end(), right_chain.begin(), right_chain.end());
+  clash.certainty = weaker(clash.certainty, through_matrices(function, sheeted, chain));
   if (conflict.via) {
     auto& side = conflict.left_operand == kResult ? clash.left_proof : clash.right_proof;
     side.insert(side.begin(), conflict.via->proof.begin(), conflict.via->proof.end());

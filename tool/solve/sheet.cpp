@@ -41,7 +41,10 @@ bool Sheet::unite(const Edge& edge) {
   NodeId a = root(edge.a), b = root(edge.b);
   if (a != b) {
     NodeId left = constant_[at(a)], right = constant_[at(b)];
-    if (left != NodeId::none && right != NodeId::none) return false;
+    if (left != NodeId::none && right != NodeId::none) {
+      if (binds(left) == binds(right)) return false;
+      (binds(left) ? left : right) = NodeId::none;
+    }
     if (rank_[at(a)] < rank_[at(b)]) std::swap(a, b);
     if (rank_[at(a)] == rank_[at(b)]) ++rank_[at(a)];
     parent_[at(b)] = a;
@@ -52,6 +55,13 @@ bool Sheet::unite(const Edge& edge) {
   edges_of_[at(edge.b)].push_back(edges_.size());
   edges_.push_back(edge);
   return true;
+}
+
+// `own body` of an object that the function makes (a local, a temporary) is
+// whatever frame is put there; of an object that comes from outside it is its own.
+bool Sheet::binds(NodeId constant) const {
+  const Frame& frame = frames_.at(constant);
+  return frame.own && (frame.owner.starts_with('l') || frame.owner.starts_with('t')) && !frame.owner.starts_with("this");
 }
 
 NodeId Sheet::constant_of(NodeId node) const { return constant_[at(root(node))]; }

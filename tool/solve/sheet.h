@@ -47,6 +47,7 @@ class Sheet {
   NodeId root(NodeId) const;
 
  private:
+  bool binds(NodeId constant) const;
   mutable std::vector<NodeId> parent_;
   std::vector<std::uint32_t> rank_;
   std::vector<NodeId> constant_;  // by root

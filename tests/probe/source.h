@@ -28,6 +28,15 @@ class SourceFile {
   ~SourceFile() { std::filesystem::remove_all(folder_); }
   SourceFile(const SourceFile&) = delete;
 
+  // One more unit, with the flags of the first.
+  const project::Unit& add(const std::string& name, const std::string& text) {
+    write(name, text);
+    project.units.push_back(project.units.front());
+    project.units.back().file = folder_ + "/" + name;
+    return project.units.back();
+  }
+  const std::string& folder() const { return folder_; }
+
   void write(const std::string& name, const std::string& text) const { std::ofstream(folder_ + "/" + name) << text; }
   const project::Unit& unit() const { return project.units.at(0); }
 

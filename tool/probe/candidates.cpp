@@ -25,6 +25,11 @@ struct Survey : RecursiveASTVisitor<Survey> {
   Constants constants;
 
   explicit Survey(ASTContext& c) : context(c) {}
+  void all() {
+    SourceManager& manager = context.getSourceManager();
+    for (Decl* decl : context.getTranslationUnitDecl()->decls())
+      if (!manager.isInSystemHeader(manager.getExpansionLoc(decl->getLocation()))) TraverseDecl(decl);
+  }
   bool shouldVisitTemplateInstantiations() const { return true; }
   bool shouldVisitImplicitCode() const { return false; }
   bool VisitFunctionDecl(FunctionDecl* function) {
@@ -32,7 +37,8 @@ struct Survey : RecursiveASTVisitor<Survey> {
     FunctionDecl* definition = function->getDefinition();
     if (!definition) {
       const FunctionDecl* pattern = function->getTemplateInstantiationPattern();
-      if (!pattern || !pattern->isDefined() || !function->isReferenced()) return true;
+      const bool asked = function->isReferenced() || function->getTemplateSpecializationKind() == TSK_ExplicitInstantiationDefinition;
+      if (!pattern || !pattern->isDefined() || !asked) return true;
       definition = function;
     }
     if (seen.insert(definition->getCanonicalDecl()).second) functions.push_back(definition);
@@ -92,9 +98,7 @@ class Finder {
         flattener_(context, sema, project.models), survey_(context) {}
 
   std::vector<Found> run() {
-    SourceManager& manager = context_.getSourceManager();
-    for (Decl* decl : context_.getTranslationUnitDecl()->decls())
-      if (!manager.isInSystemHeader(manager.getExpansionLoc(decl->getLocation()))) survey_.TraverseDecl(decl);
+    survey_.all();
     std::vector<Found> list;
     for (FunctionDecl* function : survey_.functions)
       if (in_scope(function) && (wanted_.name.empty() || fits(wanted_.name, gather::Types::name(function)))) take(function, list);
@@ -190,6 +194,15 @@ class Finder {
 };
 
 }  // namespace
+
+std::vector<FunctionDecl*> find_functions(ASTContext& context, const std::set<std::string>& keys) {
+  Survey survey(context);
+  survey.all();
+  std::vector<FunctionDecl*> list;
+  for (FunctionDecl* function : survey.functions)
+    if (keys.contains(gather::key_of(function))) list.push_back(function);
+  return list;
+}
 
 std::vector<Found> find_candidates(ASTContext& context, Sema& sema, const project::Project& project, const Wanted& wanted,
                                    FileTable& files) {

@@ -15,6 +15,7 @@
 #include <cstddef>
 #include <map>
 #include <optional>
+#include <set>
 #include <string>
 #include <vector>
 
@@ -92,6 +93,9 @@ struct Found {
   clang::FunctionDecl* function = nullptr;
   Candidate candidate;
 };
+
+// Functions with a body by their keys, candidates or not.
+std::vector<clang::FunctionDecl*> find_functions(clang::ASTContext&, const std::set<std::string>& keys);
 
 // The candidates of the scope in the order of the text. Asked for by name, a
 // function that is none is there too, with the reason.

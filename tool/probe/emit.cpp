@@ -6,9 +6,11 @@
 #include <clang/Lex/HeaderSearchOptions.h>
 #include <clang/Lex/PreprocessorOptions.h>
 #include <llvm/IR/LLVMContext.h>
+#include <llvm/IR/Metadata.h>
 #include <llvm/IR/Module.h>
 
 #include "gather/parse.h"
+#include "gather/source.h"
 #include "probe/emit_closure.h"
 #include "probe/emit_passing.h"
 
@@ -39,6 +41,7 @@ CodeGenOptions plain_options() {
 
 GlobalDecl global_of(const FunctionDecl* function) {
   if (const auto* constructor = dyn_cast<CXXConstructorDecl>(function)) return {constructor, Ctor_Complete};
+  if (const auto* destructor = dyn_cast<CXXDestructorDecl>(function)) return {destructor, Dtor_Complete};
   return {function};
 }
 
@@ -47,7 +50,7 @@ class Emitter {
   Emitter(ASTContext& ast, Sema& sema, Kit& kit)
       : ast_(ast), closure_(sema), kit_(kit),
         diagnostics_(new DiagnosticIDs, new DiagnosticOptions, new IgnoringDiagConsumer) {
-    kit_.context = std::make_unique<llvm::LLVMContext>();
+    if (!kit_.context) kit_.context = std::make_shared<llvm::LLVMContext>();
     diagnostics_.setSourceManager(&ast.getSourceManager());
     generator_.reset(CreateLLVMCodeGen(diagnostics_, "probe", &ast.getSourceManager().getFileManager().getVirtualFileSystem(),
                                        headers_, preprocessor_, options_, *kit_.context));
@@ -56,18 +59,48 @@ class Emitter {
   void run(std::vector<Found>& found) {
     for (Found& one : found)
       if (one.candidate.refusal.empty()) one.candidate.refusal = closure_.add(one.function);
-    generator_->Initialize(ast_);
-    for (VarDecl* variable : closure_.variables()) feed(variable);
-    for (FunctionDecl* function : closure_.functions()) feed(function);
+    start();
     for (Found& one : found)
       if (one.candidate.refusal.empty()) take(one);
-    generator_->HandleTranslationUnit(ast_);
-    kit_.module.reset(generator_->ReleaseModule());
+    finish();
     for (Found& one : found) kit_.candidates.push_back(std::move(one.candidate));
-    if (!kit_.module) kit_.refusal = "Clang emits no code for it";
+  }
+
+  void run(const std::vector<FunctionDecl*>& functions) {
+    std::vector<FunctionDecl*> whole;
+    for (FunctionDecl* function : functions)
+      if (closure_.add(function).empty()) whole.push_back(function->getDefinition());
+    start();
+    for (FunctionDecl* function : whole) generator_->GetAddrOfGlobal(global_of(function), false);
+    finish();
   }
 
  private:
+  void start() {
+    generator_->Initialize(ast_);
+    for (VarDecl* variable : closure_.variables()) feed(variable);
+    for (FunctionDecl* function : closure_.functions()) feed(function);
+  }
+
+  void finish() {
+    std::vector<std::pair<std::string, std::string>> missing;
+    for (FunctionDecl* function : closure_.missing())
+      if (auto* declared = dyn_cast_or_null<llvm::Function>(generator_->GetAddrOfGlobal(global_of(function), false)))
+        missing.emplace_back(gather::key_of(function), declared->getName().str());
+    generator_->HandleTranslationUnit(ast_);
+    kit_.module.reset(generator_->ReleaseModule());
+    if (kit_.module) list(missing);
+    else kit_.refusal = "Clang emits no code for it";
+  }
+
+  void list(const std::vector<std::pair<std::string, std::string>>& missing) {
+    llvm::NamedMDNode* node = kit_.module->getOrInsertNamedMetadata(kMissing);
+    for (const auto& [key, symbol] : missing) {
+      llvm::Metadata* both[] = {llvm::MDString::get(*kit_.context, key), llvm::MDString::get(*kit_.context, symbol)};
+      node->addOperand(llvm::MDNode::get(*kit_.context, both));
+    }
+  }
+
   void feed(Decl* decl) { generator_->HandleTopLevelDecl(DeclGroupRef(decl)); }
   void feed(VarDecl* variable) {
     feed(static_cast<Decl*>(variable));
@@ -107,6 +140,18 @@ Kit emit(const project::Unit& unit, const project::Project& project, const Wante
         std::vector<Found> found = find_candidates(ast, sema, project, wanted, files);
         if (!found.empty()) Emitter(ast, sema, kit).run(found);
       },
+      gather::Bodies::all);
+  if (!read) kit.refusal = facts.not_read_because;
+  return kit;
+}
+
+Kit emit_functions(const project::Unit& unit, const project::Project& project, const std::set<std::string>& keys,
+                   std::shared_ptr<llvm::LLVMContext> context) {
+  Kit kit;
+  kit.context = std::move(context);
+  Facts facts;
+  const bool read = gather::parse(
+      unit, project, facts, [&](ASTContext& ast, Sema& sema) { Emitter(ast, sema, kit).run(find_functions(ast, keys)); },
       gather::Bodies::all);
   if (!read) kit.refusal = facts.not_read_because;
   return kit;

@@ -34,13 +34,21 @@ struct Kit {
   Kit& operator=(Kit&&) noexcept;
   ~Kit();
 
-  std::unique_ptr<llvm::LLVMContext> context;
+  std::shared_ptr<llvm::LLVMContext> context;
   std::unique_ptr<llvm::Module> module;
   std::vector<Candidate> candidates;
-  std::set<std::string> fixed;  // globals that are const: set once, by their initialisers
+  std::set<std::string> fixed;    // globals that are const: set once, by their initialisers
+  std::set<std::string> missing;  // names of functions that other units define
   std::string refusal;          // why there is nothing
 };
 
 Kit emit(const project::Unit&, const project::Project&, const Wanted&, FileTable&);
+
+// Functions by their keys, candidates or not, to be linked to another kit.
+Kit emit_functions(const project::Unit&, const project::Project&, const std::set<std::string>& keys,
+                   std::shared_ptr<llvm::LLVMContext>);
+
+// The named metadata of a module that lists what it misses: key and symbol.
+inline constexpr char kMissing[] = "dextral.missing";
 
 }  // namespace dextral::probe

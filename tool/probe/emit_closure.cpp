@@ -102,6 +102,7 @@ std::string Closure::add(FunctionDecl* candidate) {
     pending_.pop_back();
     if (++brought > kMostFunctions) continue;
     FunctionDecl* definition = defined(function);
+    if (!definition && function->isExternallyVisible() && !function->isInStdNamespace()) missing_.push_back(function);
     if (!definition || definition->isInvalidDecl()) continue;
     Names names(*this);
     names.follow(definition);

@@ -19,6 +19,8 @@ class Closure {
 
   const std::vector<clang::FunctionDecl*>& functions() const { return functions_; }  // definitions
   const std::vector<clang::VarDecl*>& variables() const { return variables_; }
+  // Named, and without a body in this unit.
+  const std::vector<clang::FunctionDecl*>& missing() const { return missing_; }
 
  private:
   friend struct Names;
@@ -29,6 +31,7 @@ class Closure {
   clang::Sema& sema_;
   std::vector<clang::FunctionDecl*> functions_;
   std::vector<clang::VarDecl*> variables_;
+  std::vector<clang::FunctionDecl*> missing_;
   std::set<const clang::Decl*> seen_;
   std::set<const clang::FunctionDecl*> broken_;
   std::vector<clang::FunctionDecl*> pending_;

@@ -45,6 +45,8 @@ Measurement measure_one(const std::shared_ptr<Stage>& stage, const std::vector<S
     measurement.signature = ready.signature;
     measurement.steps = *ready.steps;
   }
+  if (const std::string called = "calls "; measurement.refusal.starts_with(called))
+    if (stage->kit().missing.contains(measurement.refusal.substr(called.size()))) measurement.refusal += ", defined elsewhere";
   measurement.selected = selected;
   add_selectors(candidate, measurement);
   return measurement;
@@ -65,9 +67,11 @@ std::vector<Measurement> measure_all(const Kit& kit, const Candidate& candidate)
 
 }  // namespace
 
-Report measure(const project::Unit& unit, const project::Project& project, const Wanted& wanted, FileTable& files) {
+Report measure(const project::Unit& unit, const project::Project& project, const Wanted& wanted, const Elsewhere& elsewhere,
+               FileTable& files) {
   Kit kit = emit(unit, project, wanted, files);
   fix_constants(kit);
+  link(kit, project, elsewhere);
   Report report;
   report.refusal = kit.refusal;
   if (!kit.module && !kit.candidates.empty() && report.refusal.empty()) report.refusal = "Clang emits no code for it";

@@ -1,10 +1,11 @@
-// Measures the functions of one unit: emit, drive, recognise.
+// Measures the functions of one unit: emit, link, drive, recognise.
 #pragma once
 
 #include <vector>
 
 #include "core/measured.h"
 #include "probe/candidates.h"
+#include "probe/link.h"
 
 namespace dextral::probe {
 
@@ -13,6 +14,6 @@ struct Report {
   std::string refusal;                    // why the unit could not be read
 };
 
-Report measure(const project::Unit&, const project::Project&, const Wanted&, FileTable&);
+Report measure(const project::Unit&, const project::Project&, const Wanted&, const Elsewhere&, FileTable&);
 
 }  // namespace dextral::probe

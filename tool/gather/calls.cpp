@@ -221,6 +221,9 @@ bool Walker::inlinable(const FunctionDecl* function, const Invocation& invocatio
   if (const auto* method = dyn_cast<CXXMethodDecl>(function); method && method->isVirtual()) return false;
   const auto* body = dyn_cast<CompoundStmt>(function->getBody());
   if (!body || body->size() > 12) return false;
+  // What has a contract is called by it.
+  const auto parameters = function->parameters();
+  if (std::any_of(parameters.begin(), parameters.end(), [&](const ParmVarDecl* p) { return !unit_.phrases.of(p).empty(); })) return false;
   if (const auto* constructor = dyn_cast<CXXConstructorDecl>(function)) {
     TypeFacts facts = unit_.types.of(unit_.ast.getTypeDeclType(constructor->getParent()));
     return facts.group && !facts.model;

@@ -298,6 +298,16 @@ NodeId node_of(Sheeted& sheeted, const Thing& thing, const std::string& path, Sl
   return node_in(sheeted, std::get<Snapshot>(thing), path, slot);
 }
 
+bool is_of_phrases(const Function& function, const Sheeted& sheeted, const Conflict& conflict) {
+  const Operation& op = function.operations.at(conflict.operation);
+  if (op.kind != OperationKind::hold) return false;
+  const std::vector<Edge> chain = sheeted.sheet.path(conflict.left, sheeted.sheet.constant_of(conflict.left));
+  if (chain.size() != 1) return false;
+  const Operation& other = function.operations.at(chain[0].operation);
+  return other.kind == OperationKind::hold && other.operands[0].value == op.operands[0].value &&
+         function.holds.at(other.item).subject == function.holds.at(op.item).subject;
+}
+
 Sheeted sheet_of(const Function& function, const Setting& setting, const std::set<std::uint32_t>& removed,
                  const Alteration* alteration, std::uint32_t last) {
   Sheeted out;

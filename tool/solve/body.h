@@ -63,6 +63,9 @@ inline constexpr std::uint32_t kNoOperation = 0xffffffff;
 Sheeted sheet_of(const Function&, const Setting&, const std::set<std::uint32_t>& removed,
                  const Alteration* = nullptr, std::uint32_t last = kNoOperation);
 
+// Do two phrases of one thing contradict each other, before anything is made of it?
+bool is_of_phrases(const Function&, const Sheeted&, const Conflict&);
+
 // The node of a slot of what `thing` stands for at `path` below it, or none.
 NodeId node_of(Sheeted&, const std::variant<ValueId, Snapshot>& thing, const std::string& path, Slot);
 

@@ -78,11 +78,12 @@ bool only_declared(const std::vector<Reason>& proof) {
   return std::all_of(proof.begin(), proof.end(), [](const Reason& r) { return r.kind == ReasonKind::declared; });
 }
 
-ClashKind kind_of(const Function& function, const Conflict& conflict, const Clash& clash) {
+ClashKind kind_of(const Function& function, const Sheeted& sheeted, const Conflict& conflict, const Clash& clash) {
   const Operation& op = function.operations.at(conflict.operation);
   if (!clash.repairs.empty() && clash.repairs[0].kind == RepairKind::two_sided) return ClashKind::tensor;
   if (op.kind != OperationKind::hold) return ClashKind::frames;
   const Hold& hold = function.holds.at(op.item);
+  if (is_of_phrases(function, sheeted, conflict)) return ClashKind::contract;
   if (hold.contract && only_declared(clash.left_proof) && only_declared(clash.right_proof)) return ClashKind::contract;
   if (is_tensor(hold) && clash.repairs.empty()) return ClashKind::tensor;
   return ClashKind::frames;
@@ -145,8 +146,9 @@ Clash clash_of(const Function& function, Sheeted& sheeted, const Conflict& confl
     const Hold& hold = function.holds.at(op.item);
     clash.right_proof.insert(clash.right_proof.begin(), {ReasonKind::declared, hold.source, hold.phrase, hold.subject, hold.said});
   }
+  if (is_of_phrases(function, sheeted, conflict)) clash.subject = function.holds.at(op.item).subject;
   clash.repairs = culprit.repairs;
-  clash.kind = kind_of(function, conflict, clash);
+  clash.kind = kind_of(function, sheeted, conflict, clash);
   return clash;
 }
 

@@ -44,6 +44,8 @@ class Chains {
   }
 
   std::vector<Clash> run() {
+    for (const Reading& reading : function_.readings)
+      if (reading.epoch == 0 && is_formal(reading.path)) reached_[std::size_t(reading.value)] = Reach{{{taken(reading.path), 1}}, Certainty::certain, {}};
     for (std::size_t i = 0; i < function_.operations.size(); ++i) {
       const Operation& op = function_.operations[i];
       if (op.result != ValueId::none) maker_[std::size_t(op.result)] = int(i);
@@ -69,6 +71,8 @@ class Chains {
 
  private:
   static std::string taken(const std::string& formal) { return "<" + formal; }
+  static bool is_formal(const std::string& path) { return path.find_first_of(".[") == std::string::npos && path.starts_with('p'); }
+  static bool is_open(const Ends& ends) { return !ends.empty() && ends.begin()->first.starts_with('<'); }
 
   // What the phrase of a parameter asks of the callers.
   void add_taken(const Operation& op, Reached& reached) const {
@@ -149,16 +153,38 @@ class Chains {
       auto* id = std::get_if<ValueId>(&binding.after);
       auto reach = known->second.find(binding.formal);
       if (!id || *id == ValueId::none || reach == known->second.end()) continue;
-      Reach given = reach->second;
+      std::optional<Reach> put = put_in(reach->second, call);
+      if (!put) continue;
+      Reach given = std::move(*put);
       given.proof.insert(given.proof.begin(), {ReasonKind::called, Source::modelled, op.span, op.text, call.name});
       reached_[std::size_t(*id)] = std::move(given);
     }
   }
 
+  // What the callee says of its arguments, said of those of this call.
+  std::optional<Reach> put_in(const Reach& callee, const Call& call) const {
+    Reach given;
+    given.certainty = callee.certainty;
+    given.proof = callee.proof;
+    for (const auto& [point, count] : callee.ends) {
+      if (!point.starts_with('<')) {
+        add(given.ends, {{point, 1}}, count);
+        continue;
+      }
+      auto binding = std::find_if(call.bindings.begin(), call.bindings.end(), [&](const Binding& b) { return taken(b.formal) == point; });
+      auto* id = binding == call.bindings.end() ? nullptr : std::get_if<ValueId>(&binding->before);
+      if (!id || !of(*id)) return std::nullopt;
+      for (const auto& [end, times] : of(*id)->ends) add(given.ends, {{end, 1}}, count * times);
+      given.certainty = weaker(given.certainty, of(*id)->certainty);
+      given.proof.insert(given.proof.end(), of(*id)->proof.begin(), of(*id)->proof.end());
+    }
+    return given;
+  }
+
   void take(const Operation& op, const Call& call, const Binding& binding, const Reached& known) {
     auto* id = std::get_if<ValueId>(&binding.before);
     auto wanted = known.find(taken(binding.formal));
-    if (!id || !of(*id) || wanted == known.end() || of(*id)->ends == wanted->second.ends) return;
+    if (!id || !of(*id) || wanted == known.end() || of(*id)->ends == wanted->second.ends || is_open(of(*id)->ends)) return;
     Clash clash = contradiction(*of(*id), wanted->second);
     clash.span = binding.span.valid() ? binding.span : op.span;
     clash.expression = op.text;
@@ -174,7 +200,7 @@ class Chains {
     const ValueId id = op.operands[0].value;
     if (!wanted || id == ValueId::none) return;
     std::optional<Reach>& reach = reached_[std::size_t(id)];
-    if (reach && reach->ends != *wanted) tell(op, hold, *wanted, *reach);
+    if (reach && !is_open(reach->ends) && reach->ends != *wanted) tell(op, hold, *wanted, *reach);
     reach = Reach{*wanted, certainty(hold.source), {reason(hold)}};
   }
 

@@ -6,6 +6,9 @@
 // that names points, its difference must be the phrase's. So (P to Q) + (Q to R)
 // is P to R in either order, and a term too many shows as points left over.
 //
+// A parameter without a phrase is a term of its own: what a helper makes of its
+// arguments is put together anew in each call.
+//
 // Limits: forward only (an unknown term is not inferred from the others); poses
 // applied to points are not followed; points named ?P are variables, and say
 // nothing here.

@@ -33,6 +33,7 @@ class Search {
   }
 
   Culprit run() {
+    if (is_of_phrases(function_, sheeted_, sheeted_.conflicts.front())) return {sheeted_.conflicts.front().operation, {}, {}};
     for (std::uint32_t op : operations_on_proofs()) propose(op);
     struct Success {
       std::size_t left;

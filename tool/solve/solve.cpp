@@ -134,6 +134,11 @@ class Program {
     Sheeted sheeted = sheet_of(function, setting(), removed);
     for (int i = 0; i < kMostClashes && !sheeted.conflicts.empty(); ++i) {
       Culprit culprit = find_culprit(function, setting(), removed, sheeted);
+      if (is_of_callee(function, sheeted)) {  // told there
+        remove_contracts(function, culprit.operation, removed);
+        sheeted = sheet_of(function, setting(), removed);
+        continue;
+      }
       record(function, culprit, removed, sheeted);
       removed.insert(culprit.operation);
       removed.insert(culprit.cleared.begin(), culprit.cleared.end());
@@ -161,11 +166,19 @@ class Program {
   // Phrases that contradict each other: nobody knows which is right, so the body
   // is held against none of them.
   static void remove_contracts(const Function& function, std::uint32_t refused, std::set<std::uint32_t>& removed) {
-    const ValueId value = function.operations[refused].operands[0].value;
+    const Hold& told = function.holds.at(function.operations[refused].item);
     for (std::uint32_t i = 0; i < function.operations.size(); ++i) {
       const Operation& op = function.operations[i];
-      if (op.kind == OperationKind::hold && op.operands[0].value == value && function.holds.at(op.item).contract) removed.insert(i);
+      if (op.kind != OperationKind::hold) continue;
+      const Hold& hold = function.holds.at(op.item);
+      if (hold.subject == told.subject && hold.formal == told.formal && hold.call == told.call) removed.insert(i);
     }
+  }
+
+  // Two phrases of a callee's parameter contradict each other.
+  static bool is_of_callee(const Function& function, const Sheeted& sheeted) {
+    const Conflict& conflict = sheeted.conflicts.front();
+    return is_of_phrases(function, sheeted, conflict) && function.holds.at(function.operations[conflict.operation].item).call >= 0;
   }
 
   void record(const Function& function, const Culprit& culprit, const std::set<std::uint32_t>& removed, Sheeted& surfaced) {

@@ -41,6 +41,14 @@ TEST(Emit, BodiesOfTemplatesAndLibrariesAreThere) {
   }
 }
 
+TEST(Emit, BodiesParsedLateFindBuiltins) {
+  SourceFile source("late.cpp", R"(
+    template <class T> T root(T x) { return __builtin_sqrt(x); }
+    double f(double x) { return root(x); }
+  )");
+  EXPECT_EQ(emit(source.unit(), source.project, {}, source.files).candidates.size(), 2u);
+}
+
 TEST(Emit, ClassesOfArguments) {
   SourceFile source("pass.c", R"(
     struct two { double a, b; };

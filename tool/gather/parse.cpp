@@ -76,7 +76,11 @@ class Consumer : public SemaConsumer {
   }
   void HandleTranslationUnit(ASTContext& context) override {
     done_ = true;
-    if (sema_) visit_(context, *sema_);
+    if (!sema_) return;
+    // Bodies that are parsed late look names up in the scope of the unit, which is closed by now.
+    sema_->TUScope = sema_->getCurScope();
+    visit_(context, *sema_);
+    sema_->TUScope = nullptr;
   }
 
  private:

@@ -64,14 +64,25 @@ std::string verdict(const Measurement& measurement) {
   return text;
 }
 
+// A matrix row by row, however it lies in memory.
+std::string numbers(const Group& group, const double* values) {
+  std::string text;
+  for (std::size_t i = 0; i < group.count; ++i) {
+    const bool matrix = group.rows * group.columns == group.count && group.rows > 1;
+    const std::size_t row = matrix ? i / group.columns : 0, column = matrix ? i % group.columns : i;
+    if (row > 0 && column == 0) text += ";";
+    text += " " + number(values[group.column_major && matrix ? column * group.rows + row : i]);
+  }
+  return text;
+}
+
 std::string numbers(const std::vector<Group>& groups, const std::vector<double>& values) {
   std::string text;
   std::size_t at = 0;
   for (const Group& group : groups) {
-    if (group.count == 0) continue;
-    text += "      " + escaped(group.text) + " =";
-    for (std::size_t i = 0; i < group.count && at < values.size(); ++i) text += " " + number(values[at++]);
-    text += "\n";
+    if (group.count == 0 || at + group.count > values.size()) continue;
+    text += "      " + escaped(group.text) + " =" + numbers(group, values.data() + at) + "\n";
+    at += group.count;
   }
   return text;
 }

@@ -57,7 +57,13 @@ TEST_F(Told, AsATable) {
   EXPECT_EQ(table(list, files, style),
             "kit.c:1:6: log\\x1b with seq = 321: not measured: calls printf\n"
             "kit.c:3:6: t: out is the transpose of m\n"
-            "2 measured: 1 known, 0 open between several, 0 nothing that is known, 1 refused\n");
+            "2 functions, 2 measurements: 1 known, 0 open between several, 0 nothing that is known, 1 refused\n");
+}
+
+TEST_F(Told, ValuesThatGiveTheSameShareALine) {
+  list.insert(list.begin(), list[0]);
+  list[1].selected[0].value = 322;
+  EXPECT_NE(table(list, files, style).find("log\\x1b with seq = 321 (and 1 more): not measured"), std::string::npos);
 }
 
 TEST_F(Told, SeveralAreToldAsOpen) {

@@ -154,13 +154,19 @@ std::string text(const std::vector<Measurement>& list, const FileTable& files, c
 
 std::string table(const std::vector<Measurement>& list, const FileTable& files, const Style& style) {
   std::string text;
-  std::size_t known = 0, open = 0, unknown = 0, refused = 0;
-  for (const Measurement& m : list) {
-    text += place(m, files, style) + ": " + title(m) + ": " + verdict(m) + "\n";
-    ++(!m.refusal.empty() ? refused : m.meanings.empty() ? unknown : m.meanings.size() == 1 ? known : open);
+  std::size_t known = 0, open = 0, unknown = 0, refused = 0, functions = 0;
+  for (std::size_t i = 0; i < list.size();) {
+    const Measurement& m = list[i];
+    std::size_t alike = i + 1;
+    while (alike < list.size() && list[alike].key == m.key && verdict(list[alike]) == verdict(m)) ++alike;
+    const std::string more = alike > i + 1 ? " (and " + std::to_string(alike - i - 1) + " more)" : "";
+    text += place(m, files, style) + ": " + title(m) + more + ": " + verdict(m) + "\n";
+    functions += i == 0 || list[i - 1].key != m.key;
+    for (; i < alike; ++i) ++(!m.refusal.empty() ? refused : m.meanings.empty() ? unknown : m.meanings.size() == 1 ? known : open);
   }
-  return text + std::to_string(list.size()) + " measured: " + std::to_string(known) + " known, " + std::to_string(open) +
-         " open between several, " + std::to_string(unknown) + " nothing that is known, " + std::to_string(refused) + " refused\n";
+  return text + std::to_string(functions) + " functions, " + std::to_string(list.size()) + " measurements: " + std::to_string(known) +
+         " known, " + std::to_string(open) + " open between several, " + std::to_string(unknown) + " nothing that is known, " +
+         std::to_string(refused) + " refused\n";
 }
 
 std::string json(const std::vector<Measurement>& list, const FileTable& files, const Style& style) {

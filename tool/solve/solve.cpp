@@ -76,6 +76,13 @@ std::string last_name(const std::string& qualified) {
   return colon == std::string::npos ? qualified : qualified.substr(colon + 2);
 }
 
+// Do two functions name their parameters alike, but for one?
+bool take_alike(const Function& f, const Function& g) {
+  std::size_t different = 0;
+  for (std::size_t i = 0; i < f.parameter_names.size(); ++i) different += f.parameter_names[i] != g.parameter_names[i];
+  return different <= 1;
+}
+
 Twins twins_of(const std::vector<Function>& functions) {
   std::map<std::pair<std::size_t, char>, std::vector<const Function*>> groups;
   for (const Function& f : functions) {
@@ -88,6 +95,7 @@ Twins twins_of(const std::vector<Function>& functions) {
       for (const Function* g : group) {
         std::vector<std::string> other{last_name(g->name)};
         if (f == g || group.size() > 200 || last_name(f->name) == other[0] || twins[f->key].size() >= 6) continue;
+        if (!take_alike(*f, *g)) continue;
         if (nearest_word(last_name(f->name), other)) twins[f->key].emplace_back(g->key, g->name);
       }
   return twins;

@@ -2,6 +2,8 @@
 
 #include <algorithm>
 
+#include "solve/turns.h"
+
 namespace dextral::solve {
 
 namespace {
@@ -50,7 +52,7 @@ class Body {
  public:
   Body(const Function& function, const Setting& setting, const std::set<std::uint32_t>& removed,
        const Alteration* alteration, std::uint32_t last, Sheeted& out)
-      : function_(function), setting_(setting), removed_(removed), alteration_(alteration), last_(last), out_(out) {}
+      : function_(function), setting_(setting), removed_(removed), alteration_(alteration), last_(last), out_(out), turns_(function) {}
 
   void run() {
     for (std::size_t i = 0; i < function_.values.size(); ++i) out_.values.push_back(add_pair(out_.sheet));
@@ -118,18 +120,10 @@ class Body {
       if (!join(op)) joins_.emplace_back(index_, &op);
       return;
     }
-    if (turns(op)) return;
+    if (turns_.is_turn(op)) return;
     for (const Agreement& agreement : law(op.kind, op.operands.size()))
       if (!unite(slot(op, agreement.left), slot(op, agreement.right), agreement.left.operand, agreement.right.operand))
         return;
-  }
-
-  // v + 2 w e x v + 2 e x (e x v), with e the vector of a quaternion, is a map
-  // written out: nothing of it keeps a frame.
-  bool turns(const Operation& op) const {
-    return keeps_kind(op.kind) && std::any_of(op.operands.begin(), op.operands.end(), [&](const Operand& operand) {
-             return operand.value != ValueId::none && function_.values[std::size_t(operand.value)].of_rotation;
-           });
   }
 
   Frame settled(Frame frame) const { return frame.variable ? frame : setting_.frames.orientation(frame); }
@@ -283,6 +277,7 @@ class Body {
   const Alteration* alteration_;
   std::uint32_t last_;
   Sheeted& out_;
+  Turns turns_;
   std::uint32_t index_ = 0;
   const Altered* altered_ = nullptr;
   std::vector<std::pair<std::uint32_t, const Operation*>> joins_;

@@ -7,13 +7,13 @@
 // re-expressed result. With any one agreement left out it must not. The
 // matrices are Eigen's; the rule of change is the definition of components
 // (docs/algebra.md).
+#include "core/algebra.h"
+
 #include <gtest/gtest.h>
 
 #include <eigen3/Eigen/Dense>
 #include <functional>
 #include <random>
-
-#include "core/algebra.h"
 
 namespace dextral {
 namespace {
@@ -47,7 +47,9 @@ class Random {
     m << vector(), vector(), vector();
     return m;
   }
-  Matrix3d rotation() { return Eigen::Quaterniond(1.5 + number(), number(), number(), number()).normalized().toRotationMatrix(); }
+  Matrix3d rotation() {
+    return Eigen::Quaterniond(1.5 + number(), number(), number(), number()).normalized().toRotationMatrix();
+  }
 
  private:
   std::mt19937 engine_{20240601};
@@ -62,11 +64,16 @@ Matrix3d cross_matrix(const Vector3d& v) {
 
 Thing instance(Is is, Random& random) {
   switch (is) {
-    case Is::map: return {random.matrix()};
-    case Is::vector: return {random.vector()};
-    case Is::number: return {MatrixXd::Constant(1, 1, random.number())};
-    case Is::pose: return {random.rotation(), random.vector()};
-    case Is::skewed: return {cross_matrix(random.vector())};
+    case Is::map:
+      return {random.matrix()};
+    case Is::vector:
+      return {random.vector()};
+    case Is::number:
+      return {MatrixXd::Constant(1, 1, random.number())};
+    case Is::pose:
+      return {random.rotation(), random.vector()};
+    case Is::skewed:
+      return {cross_matrix(random.vector())};
   }
   return {};
 }
@@ -141,13 +148,21 @@ const std::vector<Case>& cases() {
       {inverse, {Is::map}, Is::map, [](const T& x) { return Thing{x[0].m.inverse()}; }},
       {copy, {Is::map}, Is::map, [](const T& x) { return Thing{-2.5 * x[0].m}; }},
       {copy, {Is::vector}, Is::vector, [](const T& x) { return Thing{x[0].m / x[0].m.norm()}; }},
-      {sum, {Is::vector, Is::vector, Is::vector}, Is::vector, [](const T& x) { return Thing{x[0].m + x[1].m + 3 * x[2].m}; }},
+      {sum,
+       {Is::vector, Is::vector, Is::vector},
+       Is::vector,
+       [](const T& x) { return Thing{x[0].m + x[1].m + 3 * x[2].m}; }},
       {sum, {Is::map, Is::map}, Is::map, [](const T& x) { return Thing{x[0].m + x[1].m}; }},
       {difference, {Is::map, Is::map}, Is::map, [](const T& x) { return Thing{x[0].m - x[1].m}; }},
-      {cross, {Is::vector, Is::vector}, Is::vector, [](const T& x) { return Thing{third(x[0].m).cross(third(x[1].m))}; }},
+      {cross,
+       {Is::vector, Is::vector},
+       Is::vector,
+       [](const T& x) { return Thing{third(x[0].m).cross(third(x[1].m))}; }},
       {dot, {Is::vector, Is::vector}, Is::number, [](const T& x) { return number(third(x[0].m).dot(third(x[1].m))); }},
       {skew, {Is::vector}, Is::map, [](const T& x) { return Thing{cross_matrix(third(x[0].m))}; }},
-      {unskew, {Is::skewed}, Is::vector,
+      {unskew,
+       {Is::skewed},
+       Is::vector,
        [](const T& x) { return Thing{Vector3d(x[0].m(2, 1), x[0].m(0, 2), x[0].m(1, 0))}; }},
       {translation, {Is::pose}, Is::vector, [](const T& x) { return Thing{x[0].t}; }},
       {pose, {Is::map, Is::vector}, Is::pose, [](const T& x) { return Thing{x[0].m, third(x[1].m)}; }},

@@ -34,24 +34,42 @@ InFamily vector_of(Direction d) {
   using enum Direction;
   const Vector3d x = Vector3d::UnitX(), y = Vector3d::UnitY(), z = Vector3d::UnitZ();
   switch (d) {
-    case north: return {0, x};
-    case south: return {0, -x};
-    case east: return {0, y};
-    case west: return {0, -y};
-    case down: return {0, z};
-    case up: return {0, -z};
-    case forward: return {1, x};
-    case aft: return {1, -x};
-    case right: return {1, y};
-    case left: return {1, -y};
-    case below: return {1, z};
-    case above: return {1, -z};
-    case meridian: return {2, x};
-    case antimeridian: return {2, -x};
-    case quarter: return {2, y};
-    case antiquarter: return {2, -y};
-    case pole: return {2, z};
-    case antipole: return {2, -z};
+    case north:
+      return {0, x};
+    case south:
+      return {0, -x};
+    case east:
+      return {0, y};
+    case west:
+      return {0, -y};
+    case down:
+      return {0, z};
+    case up:
+      return {0, -z};
+    case forward:
+      return {1, x};
+    case aft:
+      return {1, -x};
+    case right:
+      return {1, y};
+    case left:
+      return {1, -y};
+    case below:
+      return {1, z};
+    case above:
+      return {1, -z};
+    case meridian:
+      return {2, x};
+    case antimeridian:
+      return {2, -x};
+    case quarter:
+      return {2, y};
+    case antiquarter:
+      return {2, -y};
+    case pole:
+      return {2, z};
+    case antipole:
+      return {2, -z};
   }
   return {3, x};
 }
@@ -96,8 +114,8 @@ TEST(Directions, SynonymsAreReadAndNeverPrinted) {
 
 TEST(Catalogue, BuiltInNamesAreThoseOfThePage) {
   EXPECT_EQ(FrameCatalogue::builtin().names(),
-            (std::vector<std::string>{"body", "camera", "ecef", "eci", "enu", "flu", "frd", "imu", "lidar", "map", "ned",
-                                      "neu", "nwu", "sensor", "sez", "world"}));
+            (std::vector<std::string>{"body", "camera", "ecef", "eci", "enu", "flu", "frd", "imu", "lidar", "map",
+                                      "ned", "neu", "nwu", "sensor", "sez", "world"}));
   const FrameCatalogue frames = FrameCatalogue::builtin();
   for (const std::string& name : frames.names()) EXPECT_TRUE(frames.find(name)->builtin) << name;
 }
@@ -113,7 +131,8 @@ TEST(Catalogue, EveryMapIsThatOfTheAxes) {
       ASSERT_EQ(map.has_value(), one_family) << to->name << " from " << from->name;
       if (!map) continue;
       ++pairs;
-      EXPECT_EQ(matrix_of(*map), Matrix3d(axes_of(*to).transpose() * axes_of(*from))) << to->name << " from " << from->name;
+      EXPECT_EQ(matrix_of(*map), Matrix3d(axes_of(*to).transpose() * axes_of(*from)))
+          << to->name << " from " << from->name;
       EXPECT_EQ(map->determinant(), int(std::lround(matrix_of(*map).determinant())));
     }
   EXPECT_EQ(pairs, 5 * 5 + 3 * 3 + 1);
@@ -131,7 +150,8 @@ TEST(Catalogue, TheHandIsTheSignOfTheDeterminant) {
 TEST(Catalogue, TheHandOfEveryNamingOfAxes) {
   int right = 0, left = 0;
   for (int code = 0; code < 216; ++code) {
-    const std::array<Direction, 3> axes = {Direction(6 + code % 6), Direction(6 + code / 6 % 6), Direction(6 + code / 36)};
+    const std::array<Direction, 3> axes = {Direction(6 + code % 6), Direction(6 + code / 6 % 6),
+                                           Direction(6 + code / 36)};
     FrameCatalogue frames = FrameCatalogue::builtin();
     const FrameFacts f = facts("probe", axes);
     const double determinant = axes_of(f).determinant();

@@ -1,10 +1,11 @@
 // Quantities: which frames their kinds give, and when two are the same.
+#include "core/quantity.h"
+
 #include <gtest/gtest.h>
 
 #include <functional>
 
 #include "core/evidence.h"
-#include "core/quantity.h"
 
 namespace dextral {
 namespace {
@@ -45,13 +46,14 @@ TEST(Quantity, TensorsStandInOneFrame) {
 }
 
 TEST(Quantity, VectorsHaveRowsAlone) {
-  for (Kind kind : {Kind::vector, Kind::position, Kind::rate, Kind::velocity, Kind::acceleration, Kind::specific_force, Kind::torque})
+  for (Kind kind : {Kind::vector, Kind::position, Kind::rate, Kind::velocity, Kind::acceleration, Kind::specific_force,
+                    Kind::torque})
     EXPECT_EQ(pair(of(kind)), "body<-") << int(kind);
 }
 
 TEST(Quantity, WhatIsNoVectorHasNoFrame) {
-  for (Kind kind : {Kind::turn, Kind::angles, Kind::angle_rates, Kind::along, Kind::heading, Kind::geodetic, Kind::chosen,
-                    Kind::none, Kind::unit})
+  for (Kind kind : {Kind::turn, Kind::angles, Kind::angle_rates, Kind::along, Kind::heading, Kind::geodetic,
+                    Kind::chosen, Kind::none, Kind::unit})
     EXPECT_EQ(pair(of(kind)), "<-") << int(kind);
 }
 

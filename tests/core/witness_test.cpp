@@ -4,13 +4,13 @@
 // The quaternion of the sequence 3-2-1 in half angles is the closed form of
 // Diebel, "Representing Attitude" (2006), from memory; the first test checks it
 // against Eigen. The angle of a rotation is twice the arccosine of its scalar part.
+#include "core/witness.h"
+
 #include <gtest/gtest.h>
 
 #include <algorithm>
 #include <cmath>
 #include <eigen3/Eigen/Geometry>
-
-#include "core/witness.h"
 
 namespace dextral {
 namespace {
@@ -30,7 +30,8 @@ double angle(const Eigen::Quaterniond& q) { return 2 * std::acos(std::min(1.0, s
 TEST(Witness, TheClosedFormIsThatOfEigensElementaryTurns) {
   using Eigen::AngleAxisd, Eigen::Vector3d;
   const Eigen::Quaterniond q = Eigen::Quaterniond(AngleAxisd(30 * kDegree, Vector3d::UnitZ())) *
-                               AngleAxisd(20 * kDegree, Vector3d::UnitY()) * AngleAxisd(10 * kDegree, Vector3d::UnitX());
+                               AngleAxisd(20 * kDegree, Vector3d::UnitY()) *
+                               AngleAxisd(10 * kDegree, Vector3d::UnitX());
   EXPECT_NEAR(q.angularDistance(yaw_pitch_roll(30, 20, 10)), 0, 1e-7);
 }
 

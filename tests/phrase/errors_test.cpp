@@ -30,44 +30,42 @@ TEST_P(WrongWord, NameTheWordItsPlaceAndTheRemedy) {
 
 INSTANTIATE_TEST_SUITE_P(
     Words, WrongWord,
-    testing::Values(
-        Wrong{"pasive ned to body", "pasive", "this begins no phrase", "passive"},
-        Wrong{"xyzzy ned to body", "xyzzy", "this begins no phrase", ""},
-        Wrong{"passive ned too body", "too", "`to` was expected", "to"},
-        Wrong{"passive to body", "to", "name of a frame", "to"},
-        Wrong{"in 2body", "2body", "name of a frame", ""},
-        Wrong{"in body@", "body@", "a tag such as", ""},
-        Wrong{"in body@k-1", "body@k-1", "a tag such as", ""},
-        Wrong{"in own from", "from", "name of a frame", ""},
-        Wrong{"from to to mast in body", "to", "name of a point", ""},
-        Wrong{"from hull to 3 in body", "3", "name of a point", ""},
-        Wrong{"from hull to mast at body", "at", "`in` was expected", ""},
-        Wrong{"rate of body agianst ned in body", "agianst", "`against` was expected", "against"},
-        Wrong{"rate of body relative two ned in body", "two", "`to` was expected", "to"},
-        Wrong{"velocity off hull against ned in body", "off", "`of` was expected", "of"},
-        Wrong{"specific farce in body", "farce", "`force` was expected", "force"},
-        Wrong{"torque about in in body", "in", "name of a point", ""},
-        Wrong{"angles 3-2-4 ned to body", "3-2-4", "a sequence such as 3-2-1", "3-2-1"},
-        Wrong{"angles zyx ned to body", "zyx", "add `, moving` or `, fixed`", ""},
-        Wrong{"angle rates zyx ned to body", "zyx", "add `, moving` or `, fixed`", ""},
-        Wrong{"angle of north toward east", "of", "`from` was expected", ""},
-        Wrong{"angle from nroth toward east", "nroth", "a direction such as", "north"},
-        Wrong{"along sideways", "sideways", "a direction such as", ""},
-        Wrong{"geodetic latitud", "latitud", "latitude, longitude or height", "latitude"},
-        Wrong{"covariance in body", "in", "`of` was expected", ""},
-        Wrong{"covariance of pasive ned to body", "pasive", "this begins no phrase", "passive"},
-        Wrong{"in frame named bye kind", "bye", "`by` was expected", "by"},
-        Wrong{"pose of mast inn body", "inn", "`in` was expected", "in"},
-        Wrong{"in ned deg", "deg", "a comma or the end", ""},
-        Wrong{"in ned, degs", "degs", "no qualifier", "deg"},
-        Wrong{"in ned, scalar frist", "frist", "first or last", "first"},
-        Wrong{"in ned, maps by qvq", "qvq", "qvq* or q*vq", "qvq*"},
-        Wrong{"in ned, maps with qvq*", "with", "`by` was expected", ""},
-        Wrong{"in ned, stored role pitch yaw", "role", "roll, pitch and yaw", "roll"},
-        Wrong{"in ned, as quaternoin", "quaternoin", "rotation vector, mrp or quaternion", "quaternion"},
-        Wrong{"in ned, as rotation vectr", "vectr", "`vector` was expected", "vector"},
-        Wrong{"in ned, row vector", "vector", "`vectors` was expected", "vectors"},
-        Wrong{"in ned, seen form ecef", "form", "`from` was expected", "from"}));
+    testing::Values(Wrong{"pasive ned to body", "pasive", "this begins no phrase", "passive"},
+                    Wrong{"xyzzy ned to body", "xyzzy", "this begins no phrase", ""},
+                    Wrong{"passive ned too body", "too", "`to` was expected", "to"},
+                    Wrong{"passive to body", "to", "name of a frame", "to"},
+                    Wrong{"in 2body", "2body", "name of a frame", ""}, Wrong{"in body@", "body@", "a tag such as", ""},
+                    Wrong{"in body@k-1", "body@k-1", "a tag such as", ""},
+                    Wrong{"in own from", "from", "name of a frame", ""},
+                    Wrong{"from to to mast in body", "to", "name of a point", ""},
+                    Wrong{"from hull to 3 in body", "3", "name of a point", ""},
+                    Wrong{"from hull to mast at body", "at", "`in` was expected", ""},
+                    Wrong{"rate of body agianst ned in body", "agianst", "`against` was expected", "against"},
+                    Wrong{"rate of body relative two ned in body", "two", "`to` was expected", "to"},
+                    Wrong{"velocity off hull against ned in body", "off", "`of` was expected", "of"},
+                    Wrong{"specific farce in body", "farce", "`force` was expected", "force"},
+                    Wrong{"torque about in in body", "in", "name of a point", ""},
+                    Wrong{"angles 3-2-4 ned to body", "3-2-4", "a sequence such as 3-2-1", "3-2-1"},
+                    Wrong{"angles zyx ned to body", "zyx", "add `, moving` or `, fixed`", ""},
+                    Wrong{"angle rates zyx ned to body", "zyx", "add `, moving` or `, fixed`", ""},
+                    Wrong{"angle of north toward east", "of", "`from` was expected", ""},
+                    Wrong{"angle from nroth toward east", "nroth", "a direction such as", "north"},
+                    Wrong{"along sideways", "sideways", "a direction such as", ""},
+                    Wrong{"geodetic latitud", "latitud", "latitude, longitude or height", "latitude"},
+                    Wrong{"covariance in body", "in", "`of` was expected", ""},
+                    Wrong{"covariance of pasive ned to body", "pasive", "this begins no phrase", "passive"},
+                    Wrong{"in frame named bye kind", "bye", "`by` was expected", "by"},
+                    Wrong{"pose of mast inn body", "inn", "`in` was expected", "in"},
+                    Wrong{"in ned deg", "deg", "a comma or the end", ""},
+                    Wrong{"in ned, degs", "degs", "no qualifier", "deg"},
+                    Wrong{"in ned, scalar frist", "frist", "first or last", "first"},
+                    Wrong{"in ned, maps by qvq", "qvq", "qvq* or q*vq", "qvq*"},
+                    Wrong{"in ned, maps with qvq*", "with", "`by` was expected", ""},
+                    Wrong{"in ned, stored role pitch yaw", "role", "roll, pitch and yaw", "roll"},
+                    Wrong{"in ned, as quaternoin", "quaternoin", "rotation vector, mrp or quaternion", "quaternion"},
+                    Wrong{"in ned, as rotation vectr", "vectr", "`vector` was expected", "vector"},
+                    Wrong{"in ned, row vector", "vector", "`vectors` was expected", "vectors"},
+                    Wrong{"in ned, seen form ecef", "form", "`from` was expected", "from"}));
 
 // A macro or a project file holds phrases alone.
 TEST(Errors, AnAcceptanceIsNoPhrase) {
@@ -76,11 +74,12 @@ TEST(Errors, AnAcceptanceIsNoPhrase) {
 
 // Every phrase cut after each of its words is an error at the end, or a shorter phrase.
 TEST(Cut, PhrasesEndTooEarly) {
-  for (std::string text : {"from hull to mast in body", "passive ned to body", "active ned to body", "turn ned to body",
-                           "angles 3-2-1 ned to body", "rate of body against ned in body", "specific force in body",
-                           "velocity of hull against ecef in ned", "torque about hull in body", "angle from north toward east",
-                           "geodetic latitude", "linear body to ned", "tensor in body, scalar last", "in ned, maps by qvq*",
-                           "in ned, seen from ecef", "in ned, as rotation vector", "pose of mast in body"})
+  for (std::string text :
+       {"from hull to mast in body", "passive ned to body", "active ned to body", "turn ned to body",
+        "angles 3-2-1 ned to body", "rate of body against ned in body", "specific force in body",
+        "velocity of hull against ecef in ned", "torque about hull in body", "angle from north toward east",
+        "geodetic latitude", "linear body to ned", "tensor in body, scalar last", "in ned, maps by qvq*",
+        "in ned, seen from ecef", "in ned, as rotation vector", "pose of mast in body"})
     for (std::size_t space = text.find(' '); space != std::string::npos; space = text.find(' ', space + 1)) {
       const std::string cut = text.substr(0, space);
       const auto parsed = parse(cut);

@@ -114,7 +114,8 @@ TEST(Page, EachQualifierSetsItsOwnField) {
       if (qualifier.rfind("//|", 0) == 0) continue;
       const Quantity said = of("passive ned to body, " + qualifier);
       EXPECT_FALSE(said == plain) << qualifier;
-      for (const std::string& other : seen) EXPECT_FALSE(said == of("passive ned to body, " + other)) << qualifier << ", " << other;
+      for (const std::string& other : seen)
+        EXPECT_FALSE(said == of("passive ned to body, " + other)) << qualifier << ", " << other;
       seen.push_back(qualifier);
     }
 }

@@ -142,7 +142,8 @@ TEST(WrongOrder, IsAnExchangeThatMends) {
 }
 
 TEST(FrameClash, IsWhatNoInversionOrExchangeMends) {
-  for (RepairKind kind : {RepairKind::other_variable, RepairKind::swap_arguments}) EXPECT_EQ(judged(mended_by(kind)).rule, "frame-clash");
+  for (RepairKind kind : {RepairKind::other_variable, RepairKind::swap_arguments})
+    EXPECT_EQ(judged(mended_by(kind)).rule, "frame-clash");
   const Finding f = judged(clash());
   EXPECT_EQ(f.rule, "frame-clash");
   EXPECT_EQ(f.sentence, "`C` is in ned, `v` in body");

@@ -44,11 +44,16 @@ TEST(Body, EachOperationIsHeldToItsLaw) {
     bool agrees;
   };
   const std::vector<Row> rows = {
-      {sum, in("ned"), in("ned"), true},        {sum, in("ned"), in("body"), false},
-      {difference, in("ned"), in("body"), false}, {cross, in("body"), in("body"), true},
-      {cross, in("ned"), in("body"), false},    {dot, in("ned"), in("body"), false},
-      {pose, passive("body", "ned"), in("ned"), true}, {pose, passive("body", "ned"), in("body"), false},
-      {transform, passive("body", "ned"), tensor("body"), true}, {transform, passive("body", "ned"), tensor("ned"), false},
+      {sum, in("ned"), in("ned"), true},
+      {sum, in("ned"), in("body"), false},
+      {difference, in("ned"), in("body"), false},
+      {cross, in("body"), in("body"), true},
+      {cross, in("ned"), in("body"), false},
+      {dot, in("ned"), in("body"), false},
+      {pose, passive("body", "ned"), in("ned"), true},
+      {pose, passive("body", "ned"), in("body"), false},
+      {transform, passive("body", "ned"), tensor("body"), true},
+      {transform, passive("body", "ned"), tensor("ned"), false},
   };
   for (const Row& row : rows) {
     Sketch f("f");
@@ -56,7 +61,8 @@ TEST(Body, EachOperationIsHeldToItsLaw) {
     const ValueId a = f.variable(map ? Shape::matrix : Shape::vector, "a", row.left);
     const ValueId b = f.variable(two ? Shape::matrix : Shape::vector, "b", row.right);
     f.apply(row.kind, {a, b}, f.of(two ? b : a).shape, "r");
-    EXPECT_EQ(solved({f}).clashes.empty(), row.agrees) << text(row.kind) << ": " << row.left.words << ", " << row.right.words;
+    EXPECT_EQ(solved({f}).clashes.empty(), row.agrees)
+        << text(row.kind) << ": " << row.left.words << ", " << row.right.words;
   }
 }
 
@@ -132,9 +138,10 @@ Clash only(const Solution& s) {
 }
 
 TEST(Certainty, OfPhrasesIsCertainAndOfANameLikely) {
-  for (auto [source, expected] : {std::pair{Source::declared, Certainty::certain}, std::pair{Source::modelled, Certainty::certain},
-                                  std::pair{Source::named, Certainty::likely}, std::pair{Source::remarked, Certainty::likely},
-                                  std::pair{Source::mined, Certainty::suspect}}) {
+  for (auto [source, expected] :
+       {std::pair{Source::declared, Certainty::certain}, std::pair{Source::modelled, Certainty::certain},
+        std::pair{Source::named, Certainty::likely}, std::pair{Source::remarked, Certainty::likely},
+        std::pair{Source::mined, Certainty::suspect}}) {
     Sketch f("f");
     f.sum(f.variable(Shape::vector, "a", in("ned")), f.variable(Shape::vector, "b", in("body"), source));
     EXPECT_EQ(only(solved({f})).certainty, expected) << text(source);

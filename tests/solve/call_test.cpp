@@ -197,7 +197,8 @@ TEST(Objects, APathOfTheCalleeIsFoundInTheCallersObject) {
   Sketch f("f");
   const ValueId mine = f.variable(Shape::rotation, "state.nav.imu.R", passive("mast", "body"));
   f.function().readings = {{"l1.nav.imu.R", 0, mine}};
-  f.add_call({"level", "level", false, {{"p0", Snapshot{"l1.nav", 0, {}}, ValueId::none, {}, "state.nav"}}}, "level(state.nav)");
+  f.add_call({"level", "level", false, {{"p0", Snapshot{"l1.nav", 0, {}}, ValueId::none, {}, "state.nav"}}},
+             "level(state.nav)");
   const Clash clash = only(solved({g, f}));
   EXPECT_EQ(clash.function, "f");
   EXPECT_NE(text(clash.left), text(clash.right));
@@ -211,7 +212,8 @@ TEST(Objects, APartWrittenSinceWinsOverThePlace) {
   Sketch f("f");
   const ValueId old = f.variable(Shape::vector, "s.v", in("body")), fresh = f.variable(Shape::vector, "n", in("ned"));
   f.function().readings = {{"l0.v", 0, old}};
-  f.add_call({"level", "level", false, {{"p0", Snapshot{"l0", 0, {{".v", fresh}}}, ValueId::none, {}, "s"}}}, "level(s)");
+  f.add_call({"level", "level", false, {{"p0", Snapshot{"l0", 0, {{".v", fresh}}}, ValueId::none, {}, "s"}}},
+             "level(s)");
   EXPECT_TRUE(solved({g, f}).clashes.empty());
 }
 
@@ -261,8 +263,11 @@ Sketch velocity_of_object() {
 
 ValueId velocity(Sketch& f, const std::string& object) {
   const ValueId r = f.value(Shape::vector, object + ".velocity()");
-  f.add_call({"Hull::velocity", "Hull::velocity", false,
-              {{"this", Snapshot{object, 0, {}}, Snapshot{object, 0, {}}, {}, object, object}, {"return", ValueId::none, r, {}, f.text(r)}}},
+  f.add_call({"Hull::velocity",
+              "Hull::velocity",
+              false,
+              {{"this", Snapshot{object, 0, {}}, Snapshot{object, 0, {}}, {}, object, object},
+               {"return", ValueId::none, r, {}, f.text(r)}}},
              f.text(r));
   return r;
 }
@@ -316,7 +321,8 @@ TEST(Measured, AMeaningIsAContract) {
 }
 
 TEST(Measured, AnAmbiguityOrASelectorSaysNothing) {
-  Measurement twofold = product_measured("mystery"), refused = product_measured("mystery"), wordless = product_measured("mystery");
+  Measurement twofold = product_measured("mystery"), refused = product_measured("mystery"),
+              wordless = product_measured("mystery");
   twofold.meanings.push_back(twofold.meanings[0]);
   refused.meanings.clear();
   wordless.meanings[0].contract.clear();

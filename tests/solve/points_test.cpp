@@ -7,7 +7,8 @@
 namespace dextral::solve {
 namespace {
 
-ValueId position(Sketch& f, const std::string& name, const std::string& from, const std::string& to, Source source = Source::declared) {
+ValueId position(Sketch& f, const std::string& name, const std::string& from, const std::string& to,
+                 Source source = Source::declared) {
   return f.variable(Shape::vector, name, from_to(from, to, "ned"), source);
 }
 
@@ -51,7 +52,8 @@ TEST(Points, ADifferenceTheWrongWayRoundIsExchanged) {
 
 TEST(Points, ASumForADifferenceAndBack) {
   Sketch f("f");
-  const ValueId a = position(f, "a", "earth", "hull"), b = position(f, "b", "earth", "mast"), c = position(f, "c", "hull", "mast");
+  const ValueId a = position(f, "a", "earth", "hull"), b = position(f, "b", "earth", "mast"),
+                c = position(f, "c", "hull", "mast");
   keep(f, f.sum(b, a), "hull", "mast");
   Clash clash = only(solved({f}));
   EXPECT_EQ(clash.left_points, "from earth twice to hull and mast");

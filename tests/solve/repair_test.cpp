@@ -92,7 +92,8 @@ TEST(Transpose, OfASumIsPutInBrackets) {
 // A library that has `Tvec` beside `vec`: the other name is the repair.
 TEST(Transpose, ByAFunctionThatInvertsTheOperand) {
   Sketch f("f", {"C", "v"});
-  const ValueId C = f.parameter(0, Shape::rotation, passive("ned", "body")), v = f.parameter(1, Shape::vector, in("body"));
+  const ValueId C = f.parameter(0, Shape::rotation, passive("ned", "body")),
+                v = f.parameter(1, Shape::vector, in("body"));
   const ValueId r = f.product(C, v);
   f.last().twins = {{0, "mul_t"}};
   f.last().callee = {FileId(0), {90, 3}, {90, 6}};
@@ -108,7 +109,8 @@ TEST(Transpose, ByAFunctionThatInvertsTheOperand) {
 TEST(Drop, OfAnInverseThatIsOneTooMany) {
   for (OperationKind kind : {OperationKind::transpose, OperationKind::inverse}) {
     Sketch f("f", {"C", "v"});
-    const ValueId C = f.parameter(0, Shape::rotation, passive("ned", "body")), v = f.parameter(1, Shape::vector, in("ned"));
+    const ValueId C = f.parameter(0, Shape::rotation, passive("ned", "body")),
+                  v = f.parameter(1, Shape::vector, in("ned"));
     const ValueId inverse = f.apply(kind, {C}, Shape::rotation, "C.inverse()");
     f.returns(f.product(inverse, v), in("body"));
     const Repair r = first(solved({f}));
@@ -302,7 +304,8 @@ TEST(OtherVariable, IsTheNewestVersion) {
   (void)b;
   f.assign("u", c);
   f.sum(a, f.variable(Shape::vector, "w", in("body")));
-  for (const Repair& r : only(solved({f})).repairs) EXPECT_FALSE(r.kind == RepairKind::other_variable && r.other == "u");
+  for (const Repair& r : only(solved({f})).repairs)
+    EXPECT_FALSE(r.kind == RepairKind::other_variable && r.other == "u");
 }
 
 TEST(Repairs, NothingMendsTwoVectorsInTwoFrames) {
@@ -337,7 +340,8 @@ TEST(Repairs, LeaveTheRightUsesAlone) {
 }
 
 TEST(Edits, TextThatStandsAlone) {
-  for (const char* alone : {"C", "s->imu.R", "R[0]", "f(a, b + c)", "C.transpose()", "(a * b)"}) EXPECT_TRUE(is_primary(alone)) << alone;
+  for (const char* alone : {"C", "s->imu.R", "R[0]", "f(a, b + c)", "C.transpose()", "(a * b)"})
+    EXPECT_TRUE(is_primary(alone)) << alone;
   for (const char* loose : {"", "a + b", "a*b", "-v", "*p", "o->*m"}) EXPECT_FALSE(is_primary(loose)) << loose;
   EXPECT_EQ(in_brackets("a + b"), "(a + b)");
   EXPECT_EQ(in_brackets("C"), "C");

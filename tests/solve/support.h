@@ -47,7 +47,9 @@ inline Said map(Kind kind, const std::string& word, const Frame& from, const Fra
 }
 inline Said passive(const Frame& from, const Frame& to) { return map(Kind::passive, "passive", from, to); }
 inline Said passive(const std::string& from, const std::string& to) { return passive(named(from), named(to)); }
-inline Said linear(const std::string& from, const std::string& to) { return map(Kind::linear, "linear", named(from), named(to)); }
+inline Said linear(const std::string& from, const std::string& to) {
+  return map(Kind::linear, "linear", named(from), named(to));
+}
 
 inline Said tensor(const std::string& frame) {
   Quantity q;
@@ -68,7 +70,8 @@ inline Said from_to(const std::string& from, const std::string& to, const std::s
 // One function in the making.
 class Sketch {
  public:
-  explicit Sketch(const std::string& name, std::vector<std::string> parameters = {}, std::uint32_t first_line = 100) : line_(first_line) {
+  explicit Sketch(const std::string& name, std::vector<std::string> parameters = {}, std::uint32_t first_line = 100)
+      : line_(first_line) {
     function_.key = function_.name = name;
     function_.span = next_line();
     function_.body = true;
@@ -128,7 +131,9 @@ class Sketch {
     return apply(OperationKind::product, {a, b}, shape, text(a) + " * " + text(b));
   }
   ValueId transpose(ValueId a) { return apply(OperationKind::transpose, {a}, of(a).shape, text(a) + ".transpose()"); }
-  ValueId sum(ValueId a, ValueId b) { return apply(OperationKind::sum, {a, b}, of(a).shape, text(a) + " + " + text(b)); }
+  ValueId sum(ValueId a, ValueId b) {
+    return apply(OperationKind::sum, {a, b}, of(a).shape, text(a) + " + " + text(b));
+  }
   ValueId difference(ValueId a, ValueId b) {
     return apply(OperationKind::difference, {a, b}, of(a).shape, text(a) + " - " + text(b));
   }
@@ -155,7 +160,8 @@ class Sketch {
     Call made{callee, callee, dispatched, {}};
     std::string words;
     for (std::size_t i = 0; i < arguments.size(); ++i) {
-      made.bindings.push_back({"p" + std::to_string(i), arguments[i], ValueId::none, argument_span(i), text(arguments[i])});
+      made.bindings.push_back(
+          {"p" + std::to_string(i), arguments[i], ValueId::none, argument_span(i), text(arguments[i])});
       words += (i ? ", " : "") + text(arguments[i]);
     }
     const ValueId result = value(shape, callee + "(" + words + ")");
@@ -166,7 +172,8 @@ class Sketch {
   // callee(argument), which may change the argument in place.
   ValueId call_in_place(const std::string& callee, ValueId argument) {
     const ValueId after = value(of(argument).shape, text(argument));
-    add_call({callee, callee, false, {{"p0", argument, after, argument_span(0), text(argument)}}}, callee + "(" + text(argument) + ")");
+    add_call({callee, callee, false, {{"p0", argument, after, argument_span(0), text(argument)}}},
+             callee + "(" + text(argument) + ")");
     return after;
   }
   void add_call(Call made, const std::string& text) {
@@ -189,7 +196,8 @@ class Sketch {
     const std::uint32_t column = 5 + 10 * std::uint32_t(i);
     return {FileId(0), {line_ + 2, column}, {line_ + 2, column + 5}};
   }
-  Operation& operation(OperationKind kind, ValueId result, const std::vector<ValueId>& operands, const std::string& words) {
+  Operation& operation(OperationKind kind, ValueId result, const std::vector<ValueId>& operands,
+                       const std::string& words) {
     Operation op;
     op.kind = kind;
     op.result = result;

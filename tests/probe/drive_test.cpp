@@ -3,6 +3,7 @@
 #include "probe/drive.h"
 
 #include "probe/drive_constants.h"
+#include "probe/drive_globals.h"
 #include "tests/probe/source.h"
 
 namespace dextral::probe {
@@ -23,6 +24,7 @@ class Kept {
        const std::vector<Selected>& selected = {})
       : source_(name, text, std::move(flags)), kit_(emit(source_.unit(), source_.project, {function, {}}, source_.files)) {
     fix_constants(kit_);
+    expose_globals(kit_);
     if (kit_.candidates.size() != 1) {
       refusal = std::to_string(kit_.candidates.size()) + " candidates; " + kit_.refusal;
       return;
@@ -46,6 +48,12 @@ class Kept {
       return {};
     }
     return std::get<Numbers>(results);
+  }
+
+  std::string refusal_at(const Numbers& numbers) const {
+    auto results = driven_.run(numbers);
+    auto* why = std::get_if<Refusal>(&results);
+    return why ? why->why : "";
   }
 
   std::string refusal;
@@ -166,7 +174,19 @@ TEST(Drive, ConstantsThatAreMade) {
   Kept scaled("a.cpp", "double twice(double x) { return 2 * x; }\nconst double k = twice(3), m = twice(k);\ndouble f(double x) { return m * x; }", "f");
   EXPECT_EQ(scaled({2}), (Numbers{24}));
   Kept unknown("a.cpp", "double other(double);\nconst double k = other(3);\ndouble f(double x) { return k * x; }", "f");
-  EXPECT_EQ(unknown.refusal, "reads the global k, whose value is not known");
+  EXPECT_EQ(unknown.signature, "p0:1 global k:1 -> return:1");
+  EXPECT_EQ(unknown({2, 5}), (Numbers{10}));
+}
+
+TEST(Drive, GlobalsAreInputs) {
+  Kept read("a.c", "double R[2][2]; extern double gain; double f(double x) { return gain * (R[1][0] + x); }", "f");
+  EXPECT_EQ(read.signature, "p0:1 global R:4=2x2 global gain:1 -> return:1");
+  EXPECT_EQ(read({1, 2, 3, 4, 5, 10}), (Numbers{50}));
+  Kept written("a.c", "static double last; double f(double x) { last = x; return 2 * x; }", "f");
+  EXPECT_EQ(written.refusal, "writes to the global last");
+  Kept seldom("a.c", "static double odd; double f(double x) { return x > 50 ? odd : x; } void g(double x) { odd = x; }", "f");
+  EXPECT_EQ(seldom.signature, "p0:1 -> return:1");
+  EXPECT_EQ(seldom.refusal_at({60}), "reads a global only here and there");
 }
 
 TEST(Drive, SelectorsAsked) {

@@ -13,6 +13,7 @@
 #pragma once
 
 #include <cstddef>
+#include <cstdint>
 #include <map>
 #include <optional>
 #include <set>
@@ -70,6 +71,7 @@ struct Formal {
   Object object;
   bool behind_pointer = false;  // the code says a pointer or a reference
   Passing passing;
+  std::uint64_t fixed_at = 0;  // of a global: where every machine has it
 };
 
 struct Candidate {

@@ -17,7 +17,7 @@ namespace {
 constexpr std::size_t kMostInputs = 40;
 constexpr std::size_t kMostOutputs = 16;
 constexpr std::size_t kMostSelections = 64;
-constexpr std::size_t kMostSteps = 400'000'000;  // of all runs of one selection
+constexpr std::size_t kMostSteps = 60'000'000;  // of all runs of one selection
 
 // One number of the signature: where it stands.
 struct Slot {
@@ -165,7 +165,23 @@ bool is_narrow(const Kit& kit, const Candidate& candidate) {
 
 std::string read_global(const std::string& symbol) { return "reads the global " + llvm::demangle(symbol) + ", whose value is not known"; }
 
+std::string written_global(const Candidate& candidate, const std::vector<std::vector<bool>>& written) {
+  for (std::size_t i = 0; i < candidate.formals.size(); ++i)
+    if (candidate.formals[i].fixed_at && std::find(written[i].begin(), written[i].end(), true) != written[i].end())
+      return "writes to the " + candidate.formals[i].name;
+  return "";
+}
+
+// What a global held before the run is no input of this run.
+bool reads_other_global(const Candidate& candidate, const Outcome& outcome, const Setting& setting) {
+  for (std::size_t i = 0; i < candidate.formals.size(); ++i)
+    for (std::size_t n = 0; candidate.formals[i].fixed_at && n < setting[i].size(); ++n)
+      if (outcome.read[i][n] && !setting[i][n]) return true;
+  return false;
+}
+
 std::string why_not(const Candidate& candidate, const Plan& plan, const Touched& touched) {
+  if (std::string why = written_global(candidate, touched.written); !why.empty()) return why;
   if (!touched.globals.empty()) return read_global(*touched.globals.begin());
   if (plan.outputs.empty()) return "writes no numbers";
   if (plan.outputs.size() > kMostOutputs) return "gives " + std::to_string(plan.outputs.size()) + " numbers";
@@ -183,18 +199,19 @@ std::variant<Driven, Refusal> drive(const std::shared_ptr<Stage>& stage, const s
   Plan plan = plan_of(candidate, touched, integers);
   plan.signature.single_precision = is_narrow(stage->kit(), candidate);
   if (std::string why = why_not(candidate, plan, touched); !why.empty()) return Refusal{why};
-  Driven driven{plan.signature, {}, std::make_shared<std::size_t>(0)};
-  auto total = std::make_shared<std::size_t>(0);
-  driven.run = [stage, plan, longest = driven.steps, total](const Numbers& numbers) -> std::variant<Numbers, Refusal> {
+  Driven driven{plan.signature, {}, std::make_shared<Effort>()};
+  driven.run = [stage, plan, effort = driven.effort](const Numbers& numbers) -> std::variant<Numbers, Refusal> {
     if (numbers.size() != plan.inputs.size()) return Refusal{"is given other numbers than it takes"};
-    if (*total > kMostSteps) return Refusal{"takes more than " + std::to_string(kMostSteps) + " steps in all"};
+    if (effort->total > kMostSteps) return Refusal{"takes more than " + std::to_string(kMostSteps) + " steps in all"};
     Setting setting = plan.integers;
     for (std::size_t i = 0; i < numbers.size(); ++i) setting[plan.inputs[i].formal][plan.inputs[i].leaf] = numbers[i];
     const Outcome outcome = stage->run(setting);
-    *longest = std::max(*longest, outcome.steps);
-    *total += outcome.steps;
+    effort->longest = std::max(effort->longest, outcome.steps);
+    effort->total += outcome.steps;
     if (!outcome.refusal.empty()) return Refusal{outcome.refusal};
     if (!outcome.globals.empty()) return Refusal{read_global(outcome.globals.front())};
+    if (reads_other_global(stage->candidate(), outcome, setting)) return Refusal{"reads a global only here and there"};
+    if (std::string why = written_global(stage->candidate(), outcome.written); !why.empty()) return Refusal{why};
     Numbers results;
     for (const Slot& slot : plan.outputs) {
       if (!outcome.after[slot.formal][slot.leaf]) return Refusal{"leaves a result unset"};

@@ -22,10 +22,16 @@
 
 namespace dextral::probe {
 
+// Steps of the machine so far.
+struct Effort {
+  std::size_t longest = 0;  // of one run
+  std::size_t total = 0;
+};
+
 struct Driven {
   Signature signature;
   Run run;
-  std::shared_ptr<std::size_t> steps;  // of the longest run so far
+  std::shared_ptr<Effort> effort;
 };
 
 // The sets of values that the integers of a candidate are tried with; one empty

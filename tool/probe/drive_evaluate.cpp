@@ -5,6 +5,8 @@
 
 #include <cstring>
 
+#include "probe/drive_globals.h"
+
 namespace dextral::probe {
 
 namespace {
@@ -112,7 +114,7 @@ class Evaluation {
       const Formal& formal = formal_at(candidate_, i);
       const bool is_result = i >= candidate_.formals.size();
       if (!in_memory(formal) || (is_result && formal.behind_pointer)) continue;
-      auto place = machine_.allocate(std::max<std::size_t>(formal.object.bytes, 1));
+      auto place = formal.fixed_at ? formal.fixed_at : machine_.allocate(std::max<std::size_t>(formal.object.bytes, 1));
       if (auto* refusal = std::get_if<Refusal>(&place)) return refuse(refusal->why);
       places_[i] = std::get<Address>(place);
       if (!write(formal.object, places_[i], setting_[i])) return false;
@@ -242,7 +244,15 @@ Setting empty_setting(const Candidate& candidate) {
 }
 
 Outcome Stage::run(const Setting& setting) {
-  if (!machine_ || ++runs_ % kRunsOfMachine == 0) machine_ = std::make_unique<Machine>(*kit_.module, Bounds{});
+  if (!machine_ || ++runs_ % kRunsOfMachine == 0) {
+    machine_ = std::make_unique<Machine>(*kit_.module, Bounds{});
+    if (!make_globals(*machine_, candidate_)) {
+      Outcome outcome;
+      outcome.refusal = "its globals cannot be laid out";
+      machine_.reset();
+      return outcome;
+    }
+  }
   return Evaluation(kit_, candidate_, setting, *machine_).run();
 }
 

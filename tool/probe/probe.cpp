@@ -4,10 +4,13 @@
 
 #include "probe/drive.h"
 #include "probe/drive_constants.h"
+#include "probe/drive_globals.h"
 
 namespace dextral::probe {
 
 namespace {
+
+constexpr std::size_t kMostSteps = 1'000'000'000;  // for the functions of one unit
 
 Measurement named(const Candidate& candidate, Measurement measurement) {
   measurement.key = candidate.key;
@@ -33,7 +36,7 @@ void add_selectors(const Candidate& candidate, Measurement& measurement) {
         }
 }
 
-Measurement measure_one(const std::shared_ptr<Stage>& stage, const std::vector<Selected>& selected) {
+Measurement measure_one(const std::shared_ptr<Stage>& stage, const std::vector<Selected>& selected, std::size_t& steps) {
   const Candidate& candidate = stage->candidate();
   std::variant<Driven, Refusal> driven = drive(stage, selected);
   Measurement measurement;
@@ -43,7 +46,8 @@ Measurement measure_one(const std::shared_ptr<Stage>& stage, const std::vector<S
     const Driven& ready = std::get<Driven>(driven);
     measurement = named(candidate, recognise(ready.signature, ready.run));
     measurement.signature = ready.signature;
-    measurement.steps = *ready.steps;
+    measurement.steps = ready.effort->longest;
+    steps += ready.effort->total;
   }
   if (const std::string called = "calls "; measurement.refusal.starts_with(called))
     if (stage->kit().missing.contains(measurement.refusal.substr(called.size()))) measurement.refusal += ", defined elsewhere";
@@ -55,11 +59,12 @@ Measurement measure_one(const std::shared_ptr<Stage>& stage, const std::vector<S
 bool is_refused(const Measurement& measurement) { return !measurement.refusal.empty(); }
 
 // Of values that a function does not take nothing is told, where it takes others.
-std::vector<Measurement> measure_all(const Kit& kit, const Candidate& candidate) {
+std::vector<Measurement> measure_all(const Kit& kit, const Candidate& candidate, std::size_t& steps) {
   if (!candidate.refusal.empty()) return {refused(candidate, candidate.refusal)};
+  if (steps > kMostSteps) return {refused(candidate, "comes after " + std::to_string(kMostSteps) + " steps in the same file")};
   std::vector<Measurement> list;
   auto stage = std::make_shared<Stage>(kit, candidate);
-  for (const std::vector<Selected>& selected : selections(*stage)) list.push_back(measure_one(stage, selected));
+  for (const std::vector<Selected>& selected : selections(*stage)) list.push_back(measure_one(stage, selected, steps));
   if (std::all_of(list.begin(), list.end(), is_refused)) list.resize(std::min<std::size_t>(list.size(), 1));
   else std::erase_if(list, is_refused);
   return list;
@@ -72,11 +77,13 @@ Report measure(const project::Unit& unit, const project::Project& project, const
   Kit kit = emit(unit, project, wanted, files);
   fix_constants(kit);
   link(kit, project, elsewhere);
+  expose_globals(kit);
   Report report;
   report.refusal = kit.refusal;
   if (!kit.module && !kit.candidates.empty() && report.refusal.empty()) report.refusal = "Clang emits no code for it";
+  std::size_t steps = 0;
   for (const Candidate& candidate : kit.candidates) {
-    std::vector<Measurement> list = kit.module ? measure_all(kit, candidate) : std::vector{refused(candidate, report.refusal)};
+    std::vector<Measurement> list = kit.module ? measure_all(kit, candidate, steps) : std::vector{refused(candidate, report.refusal)};
     report.measurements.insert(report.measurements.end(), list.begin(), list.end());
   }
   return report;

@@ -175,6 +175,17 @@ TEST(Quaternions, ConversionToMatrixAndBack) {
         return stored({w, (a[7] - a[5]) / (4 * w), (a[2] - a[6]) / (4 * w), (a[3] - a[1]) / (4 * w)}, last);
       });
       ASSERT_EQ(told(back), "matrix-to-quaternion");
+      for (const Term& t : back.meanings[0].contract) {
+        auto again = phrase::parse(phrase::print(t.quantity));
+        ASSERT_TRUE(std::holds_alternative<Quantity>(again)) << phrase::print(t.quantity);
+        EXPECT_EQ(std::get<Quantity>(again), t.quantity);
+      }
+      auto doubled = measured(signature({9}, {4}), [=](const Numbers& x) {
+        Mat a = passive ? transpose(m(x, 0)) : m(x, 0);
+        double w = std::sqrt(std::max(0.0, 1 + a[0] + a[4] + a[8])) / 2;
+        return stored(2.0 * Quat{w, (a[7] - a[5]) / (4 * w), (a[2] - a[6]) / (4 * w), (a[3] - a[1]) / (4 * w)}, last);
+      });
+      EXPECT_EQ(told(doubled), "nothing");
       EXPECT_EQ(back.meanings[0].contract[0].quantity.scalar, last ? ScalarPlace::last : ScalarPlace::first);
     }
 }

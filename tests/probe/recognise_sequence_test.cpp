@@ -160,6 +160,33 @@ TEST(Sequences, ElementaryInSenseAndUnit) {
     }
 }
 
+// Like the routines of ERFA that turn a matrix in place: r <- R3(psi) r.
+TEST(Sequences, FurtherTurnsOfAMatrix) {
+  auto m = measured(signature({1, 9}, {9}), [](const Numbers& x) { return numbers(product(elementary(2, x[0]), mat(x.data() + 1))); });
+  ASSERT_EQ(told(m), "further-turn");
+  EXPECT_EQ(contract(m), "p1: passive ?C to ?B; p0: angles 3 ?B to ?A, rad; return: passive ?C to ?A");
+  auto other = measured(signature({1, 9}, {9}), [](const Numbers& x) { return numbers(product(mat(x.data() + 1), elementary(2, -x[0]))); });
+  EXPECT_EQ(contract(other), "p1: passive ?B to ?A; p0: angles 3 ?B to ?C, rad; return: passive ?C to ?A");
+}
+
+// On unit vectors a half turn has the numbers of modified Rodrigues parameters.
+TEST(Sequences, AHalfTurnIsNoParameterSet) {
+  auto m = measured(signature({3}, {9}), [](const Numbers& x) { return numbers(2.0 * outer(vec(x.data()), vec(x.data())) - identity()); });
+  EXPECT_EQ(told(m), "nothing");
+}
+
+TEST(Sequences, PhrasesCanBeReadAgain) {
+  for (int order : {0, 1}) {
+    auto m = measured(signature({3}, {9}), [&](const Numbers& x) { return flat(published("321", x[order], x[1 - order], x[2]), true); });
+    ASSERT_EQ(told(m), "rotation-builder");
+    for (const Term& t : m.meanings[0].contract) {
+      auto again = phrase::parse(phrase::print(t.quantity));
+      ASSERT_TRUE(std::holds_alternative<Quantity>(again)) << phrase::print(t.quantity);
+      EXPECT_EQ(std::get<Quantity>(again), t.quantity);
+    }
+  }
+}
+
 TEST(Sequences, InAHomogeneousMatrix) {
   auto m = measured(signature({3}, {16}), [&](const Numbers& x) {
     Numbers r = flat(published("321", x[0], x[1], x[2]), true);

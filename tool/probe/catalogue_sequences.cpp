@@ -190,10 +190,37 @@ void add_three(Catalogue& catalogue) {
       }
 }
 
+// A matrix turned further about one axis, from the left or from the right.
+void add_further(Catalogue& catalogue, int axis, int sign, bool degrees, bool left) {
+  double k = sign * (degrees ? kPi / 180 : 1);
+  catalogue.add({.id = "further-turn", .in = {9, 1}, .out = {9},
+                 .eval = [=](In i, Out o) {
+                   Mat e = elementary(axis, k * i[1][0]), m = mat(i[0]);
+                   return put(left ? product(e, m) : product(m, e), o[0]), true;
+                 },
+                 .say = [=](const Bound& b) {
+                   std::string e = "R" + std::to_string(axis + 1) + "(" + (sign < 0 ? "-" : "") + b.in[1].text + ")";
+                   std::string formula = left ? e + " " + b.in[0].text : b.in[0].text + " " + e;
+                   Meaning m = meaning("further-turn", b.out[0].text + " = " + formula + (degrees ? ", deg" : "") + (sign < 0 ? ", active" : ", passive"));
+                   m.formula = formula;
+                   // The elementary rotation is M[A,B] on the left, M[B,C] on the right.
+                   std::string rows = left ? "A" : "B", columns = left ? "B" : "C";
+                   std::string from = sign > 0 ? columns : rows, to = sign > 0 ? rows : columns;
+                   term(m, b.in[0], left ? map("B", "C") : map("A", "B"));
+                   term(m, b.in[1], {.kind = Kind::angles, .first = variable(from), .second = variable(to), .sequence = std::to_string(axis + 1), .unit = degrees ? Unit::deg : Unit::rad});
+                   term(m, b.out[0], map("A", "C"));
+                   return m;
+                 }});
+}
+
 }  // namespace
 
 void add_sequences(Catalogue& catalogue) {
   add_three(catalogue);
+  for (int axis = 0; axis < 3; ++axis)
+    for (int sign : {1, -1})
+      for (bool degrees : {false, true})
+        for (bool left : {false, true}) add_further(catalogue, axis, sign, degrees, left);
   for (int i = 0; i < 3; ++i) {
     each_variant(1, [&](Chain c) {
       c.axis[0] = i, c.order[0] = 0;

@@ -76,9 +76,21 @@ double disagreement(const Entry& e, const Things& in, const Things& out, const N
   return worst;
 }
 
+// Quaternions and axes that a candidate gives have the length one.
+double off_unit(const Things& given, const Numbers& output) {
+  double worst = 0;
+  for (const Thing& t : given) {
+    if (t.at.size() != 4 && !(t.at.size() == 3 && given.size() == 2)) continue;
+    double square = 0;
+    for (int at : t.at) square += output[at] * output[at];
+    worst = std::max(worst, std::abs(std::sqrt(square) - 1));
+  }
+  return worst;
+}
+
 double disagreement(const Match& m, const Trial& t) {
-  return m.backward ? disagreement(*m.entry, m.in, m.out, t.output, t.input)
-                    : disagreement(*m.entry, m.in, m.out, t.input, t.output);
+  if (!m.backward) return disagreement(*m.entry, m.in, m.out, t.input, t.output);
+  return std::max(disagreement(*m.entry, m.in, m.out, t.output, t.input), off_unit(m.in, t.output));
 }
 
 std::vector<int> sizes(const Things& things) {
@@ -162,6 +174,7 @@ class Recogniser {
       }
     }
     varies_.assign(count(signature_.outputs), false);
+    look_at_selectors(*first);
     for (std::size_t k = 0; k < 2; ++k)
       if (const Trial* t = points_.at(start_domain_, start_things_, k)) perturb(*t, live);
     return live;
@@ -172,14 +185,29 @@ class Recogniser {
     int at = 0;
     for (const Group& g : signature_.inputs)
       for (std::size_t i = 0; i < g.count; ++i, ++at) {
-        if (live[at]) continue;
+        if (live[at] || g.integer) continue;
         Numbers x = t.input;
-        x[at] += g.integer ? 1 : std::abs(x[at]) * 0.37 + 0.01;
+        x[at] += std::abs(x[at]) * 0.37 + 0.01;
         auto y = points_.run(x);
         live[at] = !y || *y != t.output;
         for (std::size_t j = 0; y && j < y->size(); ++j)
           if ((*y)[j] != t.output[j]) varies_[j] = true;
-        if (live[at] && g.integer) refuse("depends on the integer " + g.text + ", which selects");
+      }
+  }
+
+  // A selector that was not held fixed: the measure would speak of one value only.
+  void look_at_selectors(const Trial& t) {
+    int at = 0;
+    for (const Group& g : signature_.inputs)
+      for (std::size_t i = 0; i < g.count; ++i, ++at) {
+        if (!g.integer) continue;
+        for (double value : {1.0, 2.0, 3.0, 4.0, 5.0, 6.0, -1.0, 123.0, 313.0, 321.0}) {
+          Numbers x = t.input;
+          x[at] = value;
+          auto y = points_.run(x);
+          if (y && *y != t.output) refuse("depends on the integer " + g.text + ", which selects");
+          if (!measurement_.refusal.empty()) return;
+        }
       }
   }
 
@@ -190,8 +218,11 @@ class Recogniser {
     for (std::size_t i = 0; i < group; ++i) out += int(signature_.outputs[i].count);
     for (const Group& g : signature_.inputs) {
       if (g.formal == o.formal && g.count == o.count) {
-        const Trial* t = points_.at(start_domain_, start_things_, 0);
-        return t && std::equal(t->input.begin() + in, t->input.begin() + in + int(g.count), t->output.begin() + out);
+        for (std::size_t k = 0; k < 4; ++k) {
+          const Trial* t = points_.at(start_domain_, start_things_, k);
+          if (!t || !std::equal(t->input.begin() + in, t->input.begin() + in + int(g.count), t->output.begin() + out)) return false;
+        }
+        return true;
       }
       in += int(g.count);
     }
@@ -264,15 +295,15 @@ class Recogniser {
   }
 
   std::vector<double> tolerances() const {
-    if (signature_.single_precision) return {2e-4};
+    if (signature_.single_precision) return {1e-5, 2e-4};
     return {1e-9, 2e-6};
   }
 
   std::vector<Meaning> recognise_outputs(const std::vector<std::size_t>& groups) {
     auto ins = readings(signature_.inputs, live_);
     auto outs = output_readings(groups);
-    for (double tolerance : tolerances())
-      for (bool restricted : {false, true})
+    for (bool restricted : {false, true})
+      for (double tolerance : tolerances())
         for (bool columns : {false, true}) {
           std::vector<Match> found = search(ins, outs, tolerance, restricted, columns);
           if (!found.empty()) return told(std::move(found), ins, outs, tolerance, restricted);
@@ -305,7 +336,7 @@ class Recogniser {
     bool big = has(4) || has(9) || has(12) || has(16);
     std::vector<Domain> list;
     if (big) list.push_back(Domain::rotation);
-    if (has(3)) list.push_back(Domain::axis);
+    if (has(3) && has(1)) list.push_back(Domain::axis);
     if (has(1) && has(4) > 1) list.push_back(Domain::blend);
     return list;
   }
@@ -344,7 +375,10 @@ class Recogniser {
     for (std::size_t k = 1; k < kTried + kFresh && !alive.empty() && !in.empty(); ++k) {
       const Trial* t = points_.at(domain, in, k);
       if (!t) return {};
-      for (std::size_t j = 0; j < y0.size(); ++j) constant &= std::abs(t->output[j] - y0[j]) <= 1e-3 * tolerance + 1e-12;
+      for (std::size_t j = 0; j < y0.size(); ++j) {
+        constant &= std::abs(t->output[j] - y0[j]) <= 1e-3 * tolerance + 1e-12;
+        if (!varies_[j] && t->output[j] != y0[j]) return {};
+      }
       std::erase_if(alive, [&](Match& m) {
         double d = disagreement(m, *t);
         m.worst = std::max(m.worst, d);
@@ -355,8 +389,17 @@ class Recogniser {
     return alive;
   }
 
-  // Whether two matches are the same function on their domain.
+  static std::vector<int> indices(const Things& things) {
+    std::vector<int> all;
+    for (const Thing& t : things) all.insert(all.end(), t.at.begin(), t.at.end());
+    std::sort(all.begin(), all.end());
+    return all;
+  }
+
+  // Whether two matches are the same function on their domain. With and without
+  // constant padding they are.
   bool same(const Match& a, const Match& b, const Things& in) {
+    if (a.domain == Domain::general && indices(a.out) != indices(b.out)) return true;
     if (a.backward != b.backward) return agree_across(a.backward ? b : a, a.backward ? a : b, in);
     for (std::uint64_t seed = 1000; seed < 1010; ++seed) {
       Numbers from = a.backward ? outputs_drawn(seed) : points_.draw(a.domain, in, seed);
@@ -429,7 +472,7 @@ class Recogniser {
     if (m.columns) meaning.words += "; matrices stored by columns";
     meaning.words += restriction(m);
     meaning.words += unused();
-    if (tolerance == 2e-6) meaning.words += "; to six digits only";
+    if (tolerance == tolerances()[1]) meaning.words += signature_.single_precision ? "; to four digits only" : "; to six digits only";
     measurement_.worst = std::max(measurement_.worst, m.worst);
     for (std::size_t i = 1; i < same.size() && meaning.equivalents.size() < 12; ++i) equivalent(meaning, same[i]);
     if (!m.columns)

@@ -1,9 +1,9 @@
 // All sequences: against Boost.QVM, against published numbers, and look-alikes.
+#include <boost/qvm/mat.hpp>
 #include <boost/qvm/mat_operations.hpp>
 #include <boost/qvm/mat_traits_array.hpp>
-#include <boost/qvm/quat_operations.hpp>
 #include <boost/qvm/quat.hpp>
-#include <boost/qvm/mat.hpp>
+#include <boost/qvm/quat_operations.hpp>
 
 #include "recognise_support.h"
 
@@ -53,13 +53,13 @@ TEST(Sequences, AgreeWithAnOutsideLibraryInBothSensesAndUnits) {
     for (bool passive : {false, true})
       for (bool degrees : {false, true}) {
         double k = degrees ? kPi / 180 : 1;
-        auto m = measured(signature({1, 1, 1}, {9}), [&](const Numbers& x) {
-          return flat(published(s, x[0] * k, x[1] * k, x[2] * k), passive);
-        });
+        auto m = measured(signature({1, 1, 1}, {9}),
+                          [&](const Numbers& x) { return flat(published(s, x[0] * k, x[1] * k, x[2] * k), passive); });
         ASSERT_EQ(told(m), "rotation-builder") << s;
         std::string unit = degrees ? ", deg" : ", rad";
         std::string angles = ": angles " + dashed(s) + " ?A to ?B" + unit;
-        EXPECT_EQ(contract(m), "p0" + angles + "; p1" + angles + "; p2" + angles + "; return: " + (passive ? "passive" : "active") + " ?A to ?B");
+        EXPECT_EQ(contract(m), "p0" + angles + "; p1" + angles + "; p2" + angles +
+                                   "; return: " + (passive ? "passive" : "active") + " ?A to ?B");
       }
 }
 
@@ -74,8 +74,10 @@ TEST(Sequences, AreReadInEveryOrderOfTheAngles) {
     EXPECT_EQ(q.sequence, "321");
     const char* roles[] = {"yaw", "pitch", "roll"};
     for (int n = 0; n < 3; ++n) {
-      if (!q.stored.empty()) EXPECT_EQ(q.stored[order[n]], roles[n]);
-      else EXPECT_EQ(order[n], n);
+      if (!q.stored.empty())
+        EXPECT_EQ(q.stored[order[n]], roles[n]);
+      else
+        EXPECT_EQ(order[n], n);
     }
   } while (std::next_permutation(order, order + 3));
 }
@@ -84,7 +86,8 @@ TEST(Sequences, AreReadInEveryOrderOfTheAngles) {
 TEST(Sequences, FixedAreMovingOnesReversed) {
   for (std::string s : kTwelve) {
     auto m = measured(signature({1, 1, 1}, {9}), [&](const Numbers& x) {
-      Outside r = qvm::operator*(turn_about(s[2] - '0', x[2]), qvm::operator*(turn_about(s[1] - '0', x[1]), turn_about(s[0] - '0', x[0])));
+      Outside r = qvm::operator*(turn_about(s[2] - '0', x[2]),
+                                 qvm::operator*(turn_about(s[1] - '0', x[1]), turn_about(s[0] - '0', x[0])));
       return flat(r, false);
     });
     ASSERT_EQ(told(m), "rotation-builder") << s;
@@ -101,23 +104,31 @@ TEST(Sequences, AsQuaternionsInBothStorages) {
         return last ? Numbers{q.a[1], q.a[2], q.a[3], q.a[0]} : Numbers{q.a[0], q.a[1], q.a[2], q.a[3]};
       });
       ASSERT_EQ(told(m), "rotation-builder-quaternion") << s;
-      EXPECT_EQ(contract(m), "p0: angles " + dashed(s) + " ?A to ?B, rad; return: active ?A to ?B, scalar " + (last ? "last" : "first") +
-                                 ", hamilton, maps by qvq*, as quaternion");
+      EXPECT_EQ(contract(m), "p0: angles " + dashed(s) + " ?A to ?B, rad; return: active ?A to ?B, scalar " +
+                                 (last ? "last" : "first") + ", hamilton, maps by qvq*, as quaternion");
     }
 }
 
 // yaw = atan2(C12, C11), pitch = -asin(C13), roll = atan2(C23, C33): passive 3-2-1.
 TEST(Sequences, ExtractionIsTheInverse) {
-  auto extract = [](const Numbers& c) { return Numbers{std::atan2(c[5], c[8]), -std::asin(c[2]), std::atan2(c[1], c[0])}; };
+  auto extract = [](const Numbers& c) {
+    return Numbers{std::atan2(c[5], c[8]), -std::asin(c[2]), std::atan2(c[1], c[0])};
+  };
   auto m = measured(signature({9}, {3}), extract);
   ASSERT_EQ(told(m), "euler-extraction");
   EXPECT_EQ(contract(m), "return: angles 3-2-1 ?A to ?B, rad, stored roll pitch yaw; p0: passive ?A to ?B");
   EXPECT_NE(words(m).find("for rotation matrices only"), std::string::npos);
   auto three = measured(signature({9}, {1, 1, 1}), extract);
   EXPECT_EQ(told(three), "euler-extraction");
-  auto off = measured(signature({9}, {3}), [&](const Numbers& c) { Numbers y = extract(c); y[1] = -y[1]; return y; });
+  auto off = measured(signature({9}, {3}), [&](const Numbers& c) {
+    Numbers y = extract(c);
+    y[1] = -y[1];
+    return y;
+  });
   EXPECT_EQ(contract(off), "");
-  auto one_sided = measured(signature({9}, {3}), [](const Numbers& c) { return Numbers{std::atan(c[5] / c[8]), -std::asin(c[2]), std::atan2(c[1], c[0])}; });
+  auto one_sided = measured(signature({9}, {3}), [](const Numbers& c) {
+    return Numbers{std::atan(c[5] / c[8]), -std::asin(c[2]), std::atan2(c[1], c[0])};
+  });
   EXPECT_EQ(told(one_sided), "nothing");
 }
 
@@ -125,18 +136,31 @@ TEST(Sequences, ExtractionIsTheInverse) {
 TEST(Sequences, TheWitnessAttitudeIsTheDefinition) {
   double k = kPi / 180;
   Mat c = product(product(elementary(0, 10 * k), elementary(1, 20 * k)), elementary(2, 30 * k));
-  const double want[] = {0.813797681349, 0.469846310393, -0.342020143326, -0.440969610530, 0.882564119259, 0.163175911167, 0.378522306370, 0.018028311236, 0.925416578398};
+  const double want[] = {0.813797681349, 0.469846310393, -0.342020143326, -0.440969610530, 0.882564119259,
+                         0.163175911167, 0.378522306370, 0.018028311236,  0.925416578398};
   for (int i = 0; i < 9; ++i) EXPECT_NEAR(c[i], want[i], 1e-12);
 }
 
 TEST(Sequences, LookAlikesAreNotTakenForTheRealThing) {
   auto right = [](const Numbers& x) { return flat(published("321", x[0], x[1], x[2]), true); };
   for (int i = 0; i < 9; ++i) {
-    auto sign = measured(signature({1, 1, 1}, {9}), [&](const Numbers& x) { Numbers y = right(x); y[i] = -y[i]; return y; });
+    auto sign = measured(signature({1, 1, 1}, {9}), [&](const Numbers& x) {
+      Numbers y = right(x);
+      y[i] = -y[i];
+      return y;
+    });
     EXPECT_EQ(told(sign), "nothing") << i;
-    auto single = measured_single(signature({1, 1, 1}, {9}), [&](const Numbers& x) { Numbers y = right(x); y[i] = -y[i]; return y; });
+    auto single = measured_single(signature({1, 1, 1}, {9}), [&](const Numbers& x) {
+      Numbers y = right(x);
+      y[i] = -y[i];
+      return y;
+    });
     EXPECT_EQ(told(single), "nothing") << i;
-    auto index = measured(signature({1, 1, 1}, {9}), [&](const Numbers& x) { Numbers y = right(x); std::swap(y[i], y[(i + 1) % 9]); return y; });
+    auto index = measured(signature({1, 1, 1}, {9}), [&](const Numbers& x) {
+      Numbers y = right(x);
+      std::swap(y[i], y[(i + 1) % 9]);
+      return y;
+    });
     EXPECT_EQ(told(index), "nothing") << i;
   }
   EXPECT_EQ(told(measured_single(signature({1, 1, 1}, {9}), right)), "rotation-builder");
@@ -154,30 +178,37 @@ TEST(Sequences, LookAlikesAreNotTakenForTheRealThing) {
 TEST(Sequences, ElementaryInSenseAndUnit) {
   for (int axis : {1, 2, 3})
     for (bool degrees : {false, true}) {
-      auto m = measured(signature({1}, {9}), [&](const Numbers& x) { return flat(turn_about(axis, x[0] * (degrees ? kPi / 180 : 1)), true); });
+      auto m = measured(signature({1}, {9}), [&](const Numbers& x) {
+        return flat(turn_about(axis, x[0] * (degrees ? kPi / 180 : 1)), true);
+      });
       ASSERT_EQ(told(m), "elementary-rotation");
-      EXPECT_EQ(contract(m), "p0: angles " + std::to_string(axis) + " ?A to ?B" + (degrees ? ", deg" : ", rad") + "; return: passive ?A to ?B");
+      EXPECT_EQ(contract(m), "p0: angles " + std::to_string(axis) + " ?A to ?B" + (degrees ? ", deg" : ", rad") +
+                                 "; return: passive ?A to ?B");
     }
 }
 
 // Like the routines of ERFA that turn a matrix in place: r <- R3(psi) r.
 TEST(Sequences, FurtherTurnsOfAMatrix) {
-  auto m = measured(signature({1, 9}, {9}), [](const Numbers& x) { return numbers(product(elementary(2, x[0]), mat(x.data() + 1))); });
+  auto m = measured(signature({1, 9}, {9}),
+                    [](const Numbers& x) { return numbers(product(elementary(2, x[0]), mat(x.data() + 1))); });
   ASSERT_EQ(told(m), "further-turn");
   EXPECT_EQ(contract(m), "p1: passive ?C to ?B; p0: angles 3 ?B to ?A, rad; return: passive ?C to ?A");
-  auto other = measured(signature({1, 9}, {9}), [](const Numbers& x) { return numbers(product(mat(x.data() + 1), elementary(2, -x[0]))); });
+  auto other = measured(signature({1, 9}, {9}),
+                        [](const Numbers& x) { return numbers(product(mat(x.data() + 1), elementary(2, -x[0]))); });
   EXPECT_EQ(contract(other), "p1: passive ?B to ?A; p0: angles 3 ?B to ?C, rad; return: passive ?C to ?A");
 }
 
 // On unit vectors a half turn has the numbers of modified Rodrigues parameters.
 TEST(Sequences, AHalfTurnIsNoParameterSet) {
-  auto m = measured(signature({3}, {9}), [](const Numbers& x) { return numbers(2.0 * outer(vec(x.data()), vec(x.data())) - identity()); });
+  auto m = measured(signature({3}, {9}),
+                    [](const Numbers& x) { return numbers(2.0 * outer(vec(x.data()), vec(x.data())) - identity()); });
   EXPECT_EQ(told(m), "nothing");
 }
 
 TEST(Sequences, PhrasesCanBeReadAgain) {
   for (int order : {0, 1}) {
-    auto m = measured(signature({3}, {9}), [&](const Numbers& x) { return flat(published("321", x[order], x[1 - order], x[2]), true); });
+    auto m = measured(signature({3}, {9}),
+                      [&](const Numbers& x) { return flat(published("321", x[order], x[1 - order], x[2]), true); });
     ASSERT_EQ(told(m), "rotation-builder");
     for (const Term& t : m.meanings[0].contract) {
       auto again = phrase::parse(phrase::print(t.quantity));
@@ -196,9 +227,14 @@ TEST(Sequences, InAHomogeneousMatrix) {
 }
 
 TEST(Sequences, RunsAndTimeAreBounded) {
-  auto m = measured(signature({3}, {9}), [&](const Numbers& x) { return flat(published("123", x[0], x[1], x[2]), false); });
+  auto m =
+      measured(signature({3}, {9}), [&](const Numbers& x) { return flat(published("123", x[0], x[1], x[2]), false); });
   EXPECT_LT(m.points, 150u);
-  auto n = measured(signature({3}, {9}), [&](const Numbers& x) { Numbers y = flat(published("123", x[0], x[1], x[2]), false); y[0] += x[1]; return y; });
+  auto n = measured(signature({3}, {9}), [&](const Numbers& x) {
+    Numbers y = flat(published("123", x[0], x[1], x[2]), false);
+    y[0] += x[1];
+    return y;
+  });
   EXPECT_LT(n.points, 150u);
 }
 

@@ -39,7 +39,8 @@ inline Measurement measured_single(Signature s, const Plain& f) {
   s.single_precision = true;
   return measured(s, [&](const Numbers& x) {
     Numbers y = f(x);
-    for (std::size_t i = 0; i < y.size(); ++i) y[i] = static_cast<float>(y[i] * (1 + 1e-6 * std::sin(double(i) + y[i] * 1e3)));
+    for (std::size_t i = 0; i < y.size(); ++i)
+      y[i] = static_cast<float>(y[i] * (1 + 1e-6 * std::sin(double(i) + y[i] * 1e3)));
     return y;
   });
 }
@@ -55,7 +56,8 @@ inline std::string words(const Measurement& m) { return m.meanings.empty() ? "" 
 inline std::string contract(const Measurement& m) {
   std::string text;
   if (m.meanings.empty()) return text;
-  for (const Term& t : m.meanings[0].contract) text += (text.empty() ? "" : "; ") + t.formal + ": " + phrase::print(t.quantity);
+  for (const Term& t : m.meanings[0].contract)
+    text += (text.empty() ? "" : "; ") + t.formal + ": " + phrase::print(t.quantity);
   return text;
 }
 

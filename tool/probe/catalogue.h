@@ -12,8 +12,8 @@
 #pragma once
 
 #include <functional>
-#include <memory>
 #include <map>
+#include <memory>
 #include <string>
 #include <vector>
 
@@ -79,12 +79,12 @@ void add_poses(Catalogue&);
 void add_units(Catalogue&);
 
 // Quantities of generic contracts.
-Frame variable(const std::string& name);                              // ?A
-Quantity in(const std::string& frame);                                // in ?A
-Quantity map(const std::string& rows, const std::string& columns);    // M[?A,?B], as `passive ?B to ?A`
-Quantity passive(const std::string& a, const std::string& b);         // passive ?A to ?B
-Quantity active(const std::string& a, const std::string& b);          // active ?A to ?B
-Quantity quaternion_of(Quantity sense, bool scalar_last);             // hamilton, maps by qvq*
+Frame variable(const std::string& name);                            // ?A
+Quantity in(const std::string& frame);                              // in ?A
+Quantity map(const std::string& rows, const std::string& columns);  // M[?A,?B], as `passive ?B to ?A`
+Quantity passive(const std::string& a, const std::string& b);       // passive ?A to ?B
+Quantity active(const std::string& a, const std::string& b);        // active ?A to ?B
+Quantity quaternion_of(Quantity sense, bool scalar_last);           // hamilton, maps by qvq*
 Quantity turn(const std::string& a, const std::string& b, Form form);
 Quantity rate(const std::string& of, const std::string& against, const std::string& in);
 

@@ -25,7 +25,10 @@ struct Rates {
 
 Mat columns(const Vec& a, const Vec& b, const Vec& c) { return {a[0], b[0], c[0], a[1], b[1], c[1], a[2], b[2], c[2]}; }
 
-Vec axis(int n) { Vec e{}; return e[n] = 1, e; }
+Vec axis(int n) {
+  Vec e{};
+  return e[n] = 1, e;
+}
 
 // The matrix from the triple of rates to the angular velocity, or its inverse.
 Mat matrix(const Rates& r, double first, double second) {
@@ -49,12 +52,14 @@ std::string sequence(const Rates& r, const char* dash) {
 }
 
 std::string how(const Rates& r, const Bound& b) {
-  std::string angles = "moving " + sequence(r, "-") + (r.space ? ", a1 = " : ", a2 = ") + b.in[0].text + (r.space ? ", a2 = " : ", a3 = ") + b.in[1].text;
+  std::string angles = "moving " + sequence(r, "-") + (r.space ? ", a1 = " : ", a2 = ") + b.in[0].text +
+                       (r.space ? ", a2 = " : ", a3 = ") + b.in[1].text;
   std::string order;
   for (int slot = 0; slot < 3; ++slot)
     for (int n = 0; n < 3; ++n)
       if (r.order[n] == slot) order += (order.empty() ? "a" : ", a") + std::to_string(n + 1) + "'";
-  return angles + (r.degrees ? ", deg" : "") + "; rates in the order " + order + (r.space ? "; angular velocity in the axes at the start" : "; angular velocity in the carried axes");
+  return angles + (r.degrees ? ", deg" : "") + "; rates in the order " + order +
+         (r.space ? "; angular velocity in the axes at the start" : "; angular velocity in the carried axes");
 }
 
 std::optional<Quantity> rates_phrase(const Rates& r) {
@@ -68,7 +73,8 @@ std::optional<Quantity> rates_phrase(const Rates& r) {
 }
 
 Meaning say_product(const Rates& r, const Bound& b) {
-  Meaning m = meaning(r.inverse ? "euler-rates-from-rate" : "rate-from-euler-rates", b.out[0].text + " from " + b.in[2].text + ": " + how(r, b));
+  Meaning m = meaning(r.inverse ? "euler-rates-from-rate" : "rate-from-euler-rates",
+                      b.out[0].text + " from " + b.in[2].text + ": " + how(r, b));
   auto rates = rates_phrase(r);
   if (!rates) return m;
   Quantity omega = rate("B", "A", r.space ? "A" : "B");
@@ -78,14 +84,22 @@ Meaning say_product(const Rates& r, const Bound& b) {
 }
 
 void add_one(Catalogue& c, const Rates& r) {
-  c.add({.id = "euler-rates", .in = {1, 1, 3}, .out = {3},
+  c.add({.id = "euler-rates",
+         .in = {1, 1, 3},
+         .out = {3},
          .eval = [r](In i, Out o) { return put(product(matrix(r, i[0][0], i[1][0]), vec(i[2])), o[0]), true; },
          .say = [r](const Bound& b) { return say_product(r, b); }});
-  c.add({.id = "euler-rate-matrix", .in = {1, 1}, .out = {9},
+  c.add({.id = "euler-rate-matrix",
+         .in = {1, 1},
+         .out = {9},
          .eval = [r](In i, Out o) { return put(matrix(r, i[0][0], i[1][0]), o[0]), true; },
-         .say = [r](const Bound& b) {
-           return meaning(r.inverse ? "inverse-euler-rate-matrix" : "euler-rate-matrix", b.out[0].text + ": matrix " + (r.inverse ? "from angular velocity to rates" : "from rates to angular velocity") + ": " + how(r, b));
-         }});
+         .say =
+             [r](const Bound& b) {
+               return meaning(r.inverse ? "inverse-euler-rate-matrix" : "euler-rate-matrix",
+                              b.out[0].text + ": matrix " +
+                                  (r.inverse ? "from angular velocity to rates" : "from rates to angular velocity") +
+                                  ": " + how(r, b));
+             }});
 }
 
 }  // namespace

@@ -33,9 +33,7 @@ Vec product(const Mat& a, const Vec& v) {
   return r;
 }
 
-double determinant(const Mat& m) {
-  return dot(Vec{m[0], m[1], m[2]}, cross({m[3], m[4], m[5]}, {m[6], m[7], m[8]}));
-}
+double determinant(const Mat& m) { return dot(Vec{m[0], m[1], m[2]}, cross({m[3], m[4], m[5]}, {m[6], m[7], m[8]})); }
 
 Mat inverse(const Mat& m) {
   Vec a{m[0], m[1], m[2]}, b{m[3], m[4], m[5]}, c{m[6], m[7], m[8]};

@@ -63,7 +63,7 @@ std::array<double, N> unit(const std::array<double, N>& a) {
 
 Vec cross(const Vec& a, const Vec& b);
 Mat identity();
-Mat skew(const Vec& v);  // skew(v) u = v x u
+Mat skew(const Vec& v);    // skew(v) u = v x u
 Vec unskew(const Mat& m);  // of the skew part
 Mat outer(const Vec& a, const Vec& b);
 Mat transpose(const Mat& m);
@@ -80,7 +80,7 @@ Mat rotation(const Quat& q);  // of the normalised quaternion
 
 Quat product(const Quat& a, const Quat& b);  // ij = k
 Quat conjugate(const Quat& q);
-Quat quaternion(const Vec& v);                     // of the active rotation by v
+Quat quaternion(const Vec& v);                       // of the active rotation by v
 Quat elementary_quaternion(int axis, double angle);  // rotation() of it is elementary()
 Quat pure(const Vec& v);
 inline Vec vector_part(const Quat& q) { return {q[1], q[2], q[3]}; }

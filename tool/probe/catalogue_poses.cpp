@@ -42,57 +42,76 @@ bool undone(const double* p, int n, double* out) {
 }
 
 void add_size(Catalogue& c, int n) {
-  c.add({.id = "pose-product", .in = {n, n}, .out = {n},
-         .eval = [n](In i, Out o) {
-           Full f = times(full(i[0], n), full(i[1], n));
-           for (int k = 0; k < n; ++k) o[0][k] = f[k];
-           return true;
-         },
-         .say = [](const Bound& b) {
-           Meaning m = meaning("pose-product", b.out[0].text + " = " + b.in[0].text + " " + b.in[1].text);
-           term(m, b.in[0], map("A", "B"));
-           term(m, b.in[1], map("B", "C"));
-           term(m, b.out[0], map("A", "C"));
-           return m;
-         }});
-  c.add({.id = "pose-inverse", .in = {n}, .out = {n}, .eval = [n](In i, Out o) { return undone(i[0], n, o[0]); },
-         .say = [](const Bound& b) {
-           Meaning m = meaning("pose-inverse", b.out[0].text + " = " + b.in[0].text + "^-1");
-           term(m, b.in[0], map("A", "B"));
-           term(m, b.out[0], map("B", "A"));
-           return m;
-         }});
-  for (bool point : {true, false})
-    for (bool back : {false, true})
-      c.add({.id = "pose-apply", .in = {n, 3}, .out = {3},
-             .eval = [=](In i, Out o) {
-               Vec t = point ? shift(i[0]) : Vec{};
-               Mat r = turning(i[0]);
-               return put(back ? product(inverse(r), vec(i[1]) - t) : product(r, vec(i[1])) + t, o[0]), true;
+  c.add({.id = "pose-product",
+         .in = {n, n},
+         .out = {n},
+         .eval =
+             [n](In i, Out o) {
+               Full f = times(full(i[0], n), full(i[1], n));
+               for (int k = 0; k < n; ++k) o[0][k] = f[k];
+               return true;
              },
-             .say = [=](const Bound& b) {
-               Meaning m = meaning(point ? "pose-apply-point" : "pose-apply-direction",
-                                   b.out[0].text + " = " + b.in[0].text + (back ? "^-1" : "") + " applied to the " + (point ? "point " : "direction ") + b.in[1].text);
-               term(m, b.in[0], back ? map("B", "A") : map("A", "B"));
-               term(m, b.in[1], in("B"));
-               term(m, b.out[0], in("A"));
+         .say =
+             [](const Bound& b) {
+               Meaning m = meaning("pose-product", b.out[0].text + " = " + b.in[0].text + " " + b.in[1].text);
+               term(m, b.in[0], map("A", "B"));
+               term(m, b.in[1], map("B", "C"));
+               term(m, b.out[0], map("A", "C"));
                return m;
              }});
+  c.add({.id = "pose-inverse",
+         .in = {n},
+         .out = {n},
+         .eval = [n](In i, Out o) { return undone(i[0], n, o[0]); },
+         .say =
+             [](const Bound& b) {
+               Meaning m = meaning("pose-inverse", b.out[0].text + " = " + b.in[0].text + "^-1");
+               term(m, b.in[0], map("A", "B"));
+               term(m, b.out[0], map("B", "A"));
+               return m;
+             }});
+  for (bool point : {true, false})
+    for (bool back : {false, true})
+      c.add({.id = "pose-apply",
+             .in = {n, 3},
+             .out = {3},
+             .eval =
+                 [=](In i, Out o) {
+                   Vec t = point ? shift(i[0]) : Vec{};
+                   Mat r = turning(i[0]);
+                   return put(back ? product(inverse(r), vec(i[1]) - t) : product(r, vec(i[1])) + t, o[0]), true;
+                 },
+             .say =
+                 [=](const Bound& b) {
+                   Meaning m = meaning(point ? "pose-apply-point" : "pose-apply-direction",
+                                       b.out[0].text + " = " + b.in[0].text + (back ? "^-1" : "") + " applied to the " +
+                                           (point ? "point " : "direction ") + b.in[1].text);
+                   term(m, b.in[0], back ? map("B", "A") : map("A", "B"));
+                   term(m, b.in[1], in("B"));
+                   term(m, b.out[0], in("A"));
+                   return m;
+                 }});
 }
 
 void add_copy(Catalogue& c) {
   for (int n : {12, 16})
-    c.add({.id = "copy", .in = {n}, .out = {n},
-           .eval = [n](In i, Out o) {
-             for (int k = 0; k < n; ++k) o[0][k] = i[0][k];
-             return true;
-           },
+    c.add({.id = "copy",
+           .in = {n},
+           .out = {n},
+           .eval =
+               [n](In i, Out o) {
+                 for (int k = 0; k < n; ++k) o[0][k] = i[0][k];
+                 return true;
+               },
            .say = [](const Bound& b) { return meaning("copy", b.out[0].text + " = " + b.in[0].text); }});
-  c.add({.id = "transpose", .in = {16}, .out = {16},
-         .eval = [](In i, Out o) {
-           for (int k = 0; k < 16; ++k) o[0][k] = i[0][4 * (k % 4) + k / 4];
-           return true;
-         },
+  c.add({.id = "transpose",
+         .in = {16},
+         .out = {16},
+         .eval =
+             [](In i, Out o) {
+               for (int k = 0; k < 16; ++k) o[0][k] = i[0][4 * (k % 4) + k / 4];
+               return true;
+             },
          .say = [](const Bound& b) { return meaning("transpose", b.out[0].text + " = " + b.in[0].text + "^T"); }});
 }
 
@@ -101,21 +120,28 @@ void add_apart(Catalogue& c) {
   for (bool transposed : {false, true})
     for (bool inside : {false, true})
       for (int sign : {1, -1})
-        c.add({.id = "turn-and-shift", .in = {9, 3, 3}, .out = {3},
-               .eval = [=](In i, Out o) {
-                 Mat m = transposed ? transpose(mat(i[0])) : mat(i[0]);
-                 Vec t = double(sign) * vec(i[2]);
-                 return put(inside ? product(m, vec(i[1]) + t) : product(m, vec(i[1])) + t, o[0]), true;
-               },
-               .say = [=](const Bound& b) {
-                 std::string r = b.in[0].text + (transposed ? "^T" : ""), t = (sign > 0 ? " + " : " - ") + b.in[2].text;
-                 Meaning m = meaning("turn-and-shift", b.out[0].text + " = " + r + (inside ? " (" + b.in[1].text + t + ")" : " " + b.in[1].text + t));
-                 term(m, b.in[0], transposed ? map("B", "A") : map("A", "B"));
-                 term(m, b.in[1], in("B"));
-                 term(m, b.in[2], in(inside ? "B" : "A"));
-                 term(m, b.out[0], in("A"));
-                 return m;
-               }});
+        c.add({.id = "turn-and-shift",
+               .in = {9, 3, 3},
+               .out = {3},
+               .eval =
+                   [=](In i, Out o) {
+                     Mat m = transposed ? transpose(mat(i[0])) : mat(i[0]);
+                     Vec t = double(sign) * vec(i[2]);
+                     return put(inside ? product(m, vec(i[1]) + t) : product(m, vec(i[1])) + t, o[0]), true;
+                   },
+               .say =
+                   [=](const Bound& b) {
+                     std::string r = b.in[0].text + (transposed ? "^T" : ""),
+                                 t = (sign > 0 ? " + " : " - ") + b.in[2].text;
+                     Meaning m = meaning(
+                         "turn-and-shift",
+                         b.out[0].text + " = " + r + (inside ? " (" + b.in[1].text + t + ")" : " " + b.in[1].text + t));
+                     term(m, b.in[0], transposed ? map("B", "A") : map("A", "B"));
+                     term(m, b.in[1], in("B"));
+                     term(m, b.in[2], in(inside ? "B" : "A"));
+                     term(m, b.out[0], in("A"));
+                     return m;
+                   }});
 }
 
 }  // namespace

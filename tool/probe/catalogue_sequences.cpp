@@ -95,7 +95,8 @@ std::vector<std::string> names(const Bound& b) {
 std::string formula(const Chain& c, const std::vector<std::string>& names) {
   std::string text;
   for (int n = 0; n < c.count; ++n)
-    text += (n ? " R" : "R") + std::to_string(c.axis[n] + 1) + "(" + (c.sign[n] < 0 ? "-" : "") + names[c.order[n]] + ")";
+    text +=
+        (n ? " R" : "R") + std::to_string(c.axis[n] + 1) + "(" + (c.sign[n] < 0 ? "-" : "") + names[c.order[n]] + ")";
   return text;
 }
 
@@ -120,20 +121,26 @@ void add_equivalents(Meaning& m, const Chain& c, const Reading& r, const std::ve
   if (!(r.plus || r.minus)) return;
   std::string sense = r.plus ? "passive" : "active";
   std::vector<int> axes(r.axes.rbegin(), r.axes.rend()), arguments(r.arguments.rbegin(), r.arguments.rend());
-  if (c.count > 1) m.equivalents.push_back(sense + " map of the fixed sequence " + digits(axes) + ", angles " + listed(arguments, names));
-  m.equivalents.push_back(std::string(r.plus ? "active" : "passive") + " ?B to ?A, where the angles lead from ?A to ?B");
+  if (c.count > 1)
+    m.equivalents.push_back(sense + " map of the fixed sequence " + digits(axes) + ", angles " +
+                            listed(arguments, names));
+  m.equivalents.push_back(std::string(r.plus ? "active" : "passive") +
+                          " ?B to ?A, where the angles lead from ?A to ?B");
   if (c.target != Target::matrix) m.equivalents.push_back("shuster product with maps by q*vq: the same numbers");
 }
 
 Meaning say(const Chain& c, const Bound& b) {
   std::vector<std::string> n = names(b);
   Reading r = read(c);
-  std::string words = b.out[0].text + (c.target == Target::matrix ? "" : ", as quaternion with map qvq*,") + " = " + formula(c, n);
+  std::string words =
+      b.out[0].text + (c.target == Target::matrix ? "" : ", as quaternion with map qvq*,") + " = " + formula(c, n);
   if (c.degrees) words += ", deg";
   if (c.target != Target::matrix) words += c.target == Target::scalar_last ? ", scalar last" : ", scalar first";
   if (r.plus || r.minus)
-    words += std::string(": ") + (r.plus ? "passive" : "active") + " map of the moving sequence " + digits(r.axes) + ", angles " + listed(r.arguments, n);
-  else words += ": angles with signs of their own, no plain sequence";
+    words += std::string(": ") + (r.plus ? "passive" : "active") + " map of the moving sequence " + digits(r.axes) +
+             ", angles " + listed(r.arguments, n);
+  else
+    words += ": angles with signs of their own, no plain sequence";
   Meaning m = meaning(id(c, b.backward), words);
   m.formula = formula(c, n);
   add_terms(m, c, b, r);
@@ -147,11 +154,12 @@ void add_chain(Catalogue& catalogue, const Chain& c, std::vector<int> in) {
   catalogue.add({.id = "rotation-builder",
                  .in = in,
                  .out = {matrix ? 9 : 4},
-                 .eval = [c, single](In i, Out o) {
-                   if (single) return build(c, i[0], o[0]), true;
-                   double x[2] = {i[0][0], i[1][0]};
-                   return build(c, x, o[0]), true;
-                 },
+                 .eval =
+                     [c, single](In i, Out o) {
+                       if (single) return build(c, i[0], o[0]), true;
+                       double x[2] = {i[0][0], i[1][0]};
+                       return build(c, x, o[0]), true;
+                     },
                  .say = [c](const Bound& b) { return say(c, b); },
                  .sameness = matrix ? Sameness::plain : Sameness::up_to_sign,
                  .backward = c.count == 3});
@@ -193,24 +201,35 @@ void add_three(Catalogue& catalogue) {
 // A matrix turned further about one axis, from the left or from the right.
 void add_further(Catalogue& catalogue, int axis, int sign, bool degrees, bool left) {
   double k = sign * (degrees ? kPi / 180 : 1);
-  catalogue.add({.id = "further-turn", .in = {9, 1}, .out = {9},
-                 .eval = [=](In i, Out o) {
-                   Mat e = elementary(axis, k * i[1][0]), m = mat(i[0]);
-                   return put(left ? product(e, m) : product(m, e), o[0]), true;
-                 },
-                 .say = [=](const Bound& b) {
-                   std::string e = "R" + std::to_string(axis + 1) + "(" + (sign < 0 ? "-" : "") + b.in[1].text + ")";
-                   std::string formula = left ? e + " " + b.in[0].text : b.in[0].text + " " + e;
-                   Meaning m = meaning("further-turn", b.out[0].text + " = " + formula + (degrees ? ", deg" : "") + (sign < 0 ? ", active" : ", passive"));
-                   m.formula = formula;
-                   // The elementary rotation is M[A,B] on the left, M[B,C] on the right.
-                   std::string rows = left ? "A" : "B", columns = left ? "B" : "C";
-                   std::string from = sign > 0 ? columns : rows, to = sign > 0 ? rows : columns;
-                   term(m, b.in[0], left ? map("B", "C") : map("A", "B"));
-                   term(m, b.in[1], {.kind = Kind::angles, .first = variable(from), .second = variable(to), .sequence = std::to_string(axis + 1), .unit = degrees ? Unit::deg : Unit::rad});
-                   term(m, b.out[0], map("A", "C"));
-                   return m;
-                 }});
+  catalogue.add({.id = "further-turn",
+                 .in = {9, 1},
+                 .out = {9},
+                 .eval =
+                     [=](In i, Out o) {
+                       Mat e = elementary(axis, k * i[1][0]), m = mat(i[0]);
+                       return put(left ? product(e, m) : product(m, e), o[0]), true;
+                     },
+                 .say =
+                     [=](const Bound& b) {
+                       std::string e =
+                           "R" + std::to_string(axis + 1) + "(" + (sign < 0 ? "-" : "") + b.in[1].text + ")";
+                       std::string formula = left ? e + " " + b.in[0].text : b.in[0].text + " " + e;
+                       Meaning m = meaning("further-turn", b.out[0].text + " = " + formula + (degrees ? ", deg" : "") +
+                                                               (sign < 0 ? ", active" : ", passive"));
+                       m.formula = formula;
+                       // The elementary rotation is M[A,B] on the left, M[B,C] on the right.
+                       std::string rows = left ? "A" : "B", columns = left ? "B" : "C";
+                       std::string from = sign > 0 ? columns : rows, to = sign > 0 ? rows : columns;
+                       term(m, b.in[0], left ? map("B", "C") : map("A", "B"));
+                       term(m, b.in[1],
+                            {.kind = Kind::angles,
+                             .first = variable(from),
+                             .second = variable(to),
+                             .sequence = std::to_string(axis + 1),
+                             .unit = degrees ? Unit::deg : Unit::rad});
+                       term(m, b.out[0], map("A", "C"));
+                       return m;
+                     }});
 }
 
 }  // namespace

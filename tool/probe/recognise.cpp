@@ -1,7 +1,10 @@
 #include "probe/recognise.h"
 
 #include <algorithm>
+#include <array>
 #include <cmath>
+#include <functional>
+#include <tuple>
 
 #include "probe/recognise_parts.h"
 
@@ -220,7 +223,8 @@ class Recogniser {
       if (g.formal == o.formal && g.count == o.count) {
         for (std::size_t k = 0; k < 4; ++k) {
           const Trial* t = points_.at(start_domain_, start_things_, k);
-          if (!t || !std::equal(t->input.begin() + in, t->input.begin() + in + int(g.count), t->output.begin() + out)) return false;
+          if (!t || !std::equal(t->input.begin() + in, t->input.begin() + in + int(g.count), t->output.begin() + out))
+            return false;
         }
         return true;
       }
@@ -294,7 +298,7 @@ class Recogniser {
     return true;
   }
 
-  std::vector<double> tolerances() const {
+  std::array<double, 2> tolerances() const {
     if (signature_.single_precision) return {1e-5, 2e-4};
     return {1e-9, 2e-6};
   }
@@ -302,12 +306,16 @@ class Recogniser {
   std::vector<Meaning> recognise_outputs(const std::vector<std::size_t>& groups) {
     auto ins = readings(signature_.inputs, live_);
     auto outs = output_readings(groups);
+    auto [strict, loose] = tolerances();
     for (bool restricted : {false, true})
-      for (double tolerance : tolerances())
-        for (bool columns : {false, true}) {
-          std::vector<Match> found = search(ins, outs, tolerance, restricted, columns);
-          if (!found.empty()) return told(std::move(found), ins, outs, tolerance, restricted);
-        }
+      for (bool columns : {false, true}) {
+        std::vector<Match> found = search(ins, outs, loose, restricted, columns);
+        if (found.empty()) continue;
+        auto exact = [&](const Match& m) { return m.worst <= strict; };
+        bool some = std::any_of(found.begin(), found.end(), exact);
+        if (some) std::erase_if(found, std::not_fn(exact));
+        return told(std::move(found), ins, outs, some ? strict : loose, restricted);
+      }
     return {};
   }
 
@@ -414,7 +422,8 @@ class Recogniser {
   Numbers outputs_drawn(std::uint64_t seed) const {
     Numbers y(count(signature_.outputs));
     std::uint64_t state = seed * 0x9E3779B97F4A7C15ull;
-    for (double& v : y) state = state * 6364136223846793005ull + 1442695040888963407ull, v = double(state >> 40) / (1 << 24) * 60 - 30;
+    for (double& v : y)
+      state = state * 6364136223846793005ull + 1442695040888963407ull, v = double(state >> 40) / (1 << 24) * 60 - 30;
     return y;
   }
 
@@ -447,11 +456,12 @@ class Recogniser {
     });
     std::vector<std::vector<Match>> classes;
     for (Match& m : found) {
-      auto home = std::find_if(classes.begin(), classes.end(), [&](auto& c) {
-        return same(c[0], m, c[0].backward ? c[0].out : c[0].in);
-      });
-      if (home == classes.end()) classes.push_back({m});
-      else home->push_back(m);
+      auto home = std::find_if(classes.begin(), classes.end(),
+                               [&](auto& c) { return same(c[0], m, c[0].backward ? c[0].out : c[0].in); });
+      if (home == classes.end())
+        classes.push_back({m});
+      else
+        home->push_back(m);
     }
     std::vector<Meaning> meanings;
     for (auto& c : classes) meanings.push_back(meaning_of(c, ins, outs, tolerance, restricted));
@@ -460,8 +470,10 @@ class Recogniser {
 
   Bound bound(const Match& m) const {
     Bound b{.backward = m.backward};
-    for (const Thing& t : m.in) b.in.push_back(named(m.backward ? signature_.outputs : signature_.inputs, t, m.backward));
-    for (const Thing& t : m.out) b.out.push_back(named(m.backward ? signature_.inputs : signature_.outputs, t, !m.backward));
+    for (const Thing& t : m.in)
+      b.in.push_back(named(m.backward ? signature_.outputs : signature_.inputs, t, m.backward));
+    for (const Thing& t : m.out)
+      b.out.push_back(named(m.backward ? signature_.inputs : signature_.outputs, t, !m.backward));
     return b;
   }
 
@@ -472,7 +484,8 @@ class Recogniser {
     if (m.columns) meaning.words += "; matrices stored by columns";
     meaning.words += restriction(m);
     meaning.words += unused();
-    if (tolerance == tolerances()[1]) meaning.words += signature_.single_precision ? "; to four digits only" : "; to six digits only";
+    if (tolerance == tolerances()[1])
+      meaning.words += signature_.single_precision ? "; to four digits only" : "; to six digits only";
     measurement_.worst = std::max(measurement_.worst, m.worst);
     for (std::size_t i = 1; i < same.size() && meaning.equivalents.size() < 12; ++i) equivalent(meaning, same[i]);
     if (!m.columns)
@@ -484,7 +497,8 @@ class Recogniser {
 
   void equivalent(Meaning& meaning, const Match& m) const {
     std::string words = m.entry->say(bound(m)).words;
-    if (words != meaning.words && std::find(meaning.equivalents.begin(), meaning.equivalents.end(), words) == meaning.equivalents.end())
+    if (words != meaning.words &&
+        std::find(meaning.equivalents.begin(), meaning.equivalents.end(), words) == meaning.equivalents.end())
       meaning.equivalents.push_back(std::move(words));
   }
 
@@ -511,7 +525,8 @@ class Recogniser {
     for (const Group& g : signature_.inputs) {
       bool none = std::none_of(live_.begin() + at, live_.begin() + at + int(g.count), [](bool b) { return b; });
       at += int(g.count);
-      bool written = std::any_of(signature_.outputs.begin(), signature_.outputs.end(), [&](const Group& o) { return o.formal == g.formal; });
+      bool written = std::any_of(signature_.outputs.begin(), signature_.outputs.end(),
+                                 [&](const Group& o) { return o.formal == g.formal; });
       if (none && !g.integer && !written) words += (words.empty() ? "; does not use " : ", ") + g.text;
     }
     return words;

@@ -68,7 +68,8 @@ void pose(Dice& dice, Numbers& x, const std::vector<int>& at, bool rotations) {
 
 void special(Dice& dice, Numbers& x, const Thing& thing, Domain domain) {
   const auto& at = thing.at;
-  if (at.size() == 9) return fill(x, at, (domain == Domain::general ? any_matrix(dice) : rotation(any_unit(dice))).data());
+  if (at.size() == 9)
+    return fill(x, at, (domain == Domain::general ? any_matrix(dice) : rotation(any_unit(dice))).data());
   if (at.size() == 12 || at.size() == 16) return pose(dice, x, at, domain != Domain::general);
   if (domain == Domain::general) return;
   if (at.size() == 4) return fill(x, at, any_unit(dice).data());

@@ -148,9 +148,7 @@ class Reader {
   std::vector<std::pair<int, Things>> found_;
 };
 
-std::string part(const Group& g, int i) {
-  return g.count == 1 ? g.text : g.text + "[" + std::to_string(i) + "]";
-}
+std::string part(const Group& g, int i) { return g.count == 1 ? g.text : g.text + "[" + std::to_string(i) + "]"; }
 
 }  // namespace
 
@@ -189,9 +187,12 @@ Named named(const std::vector<Group>& groups, const Thing& thing, bool output) {
       from += int(g.count);
     }
   }
-  if (thing.at.size() == 1) n.text = n.parts[0];
-  else if (texts.size() == 1 && !thing.partial) n.text = texts[0];
-  else if (texts.size() == 1) n.text = n.parts.front() + ".." + n.parts.back();
+  if (thing.at.size() == 1)
+    n.text = n.parts[0];
+  else if (texts.size() == 1 && !thing.partial)
+    n.text = texts[0];
+  else if (texts.size() == 1)
+    n.text = n.parts.front() + ".." + n.parts.back();
   else {
     for (const std::string& t : texts) n.text += (n.text.empty() ? "(" : ", ") + t;
     n.text += ")";

@@ -52,7 +52,7 @@ class Machine {
 
   // What the run has done to an object, byte by byte.
   struct Traffic {
-    std::vector<bool> read;     // before it was written
+    std::vector<bool> read;  // before it was written
     std::vector<bool> written;
   };
   Traffic traffic(Address object) const;

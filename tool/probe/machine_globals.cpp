@@ -40,7 +40,8 @@ bool Globals::evaluate(const llvm::Constant& constant, std::vector<Slot>& slots,
     for (const Part& part : shape.parts) slots.push_back(poison(part.width));
     return true;
   }
-  if (auto* expression = llvm::dyn_cast<llvm::ConstantExpr>(&constant)) return this->expression(*expression, slots, depth);
+  if (auto* expression = llvm::dyn_cast<llvm::ConstantExpr>(&constant))
+    return this->expression(*expression, slots, depth);
   if (shape.parts.size() == 1 && !constant.getType()->isAggregateType() && !constant.getType()->isVectorTy()) {
     Slot slot;
     if (!one(constant, slot, depth)) return false;

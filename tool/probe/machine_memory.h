@@ -22,6 +22,7 @@
 #include <map>
 #include <optional>
 #include <span>
+#include <utility>
 
 #include "probe/machine.h"
 #include "probe/machine_value.h"
@@ -37,11 +38,11 @@ struct Place {
 };
 
 struct GlobalTraits {
-  std::string name;   // for people
+  std::string name;  // for people
   std::string symbol;
   bool constant = false;
-  bool guard = false;   // of a static of a function
-  bool local = false;   // a static of a function
+  bool guard = false;               // of a static of a function
+  bool local = false;               // a static of a function
   std::function<void(Place)> fill;  // its first value, laid out at first use; none: unknown
 };
 
@@ -121,7 +122,7 @@ class Memory {
   struct Object {
     std::uint8_t* bytes = nullptr;
     std::uint8_t* undefined = nullptr;
-    std::uint32_t open_read = 0;   // bytes that need no closer look
+    std::uint32_t open_read = 0;  // bytes that need no closer look
     std::uint32_t open_write = 0;
     std::uint32_t generation = 1;
     Origin origin = Origin::heap;
@@ -177,9 +178,9 @@ class Memory {
 
   Fault& fault_;
   const std::size_t bytes_;
-  std::size_t live_ = 0;     // bytes of all objects but globals and functions
+  std::size_t live_ = 0;  // bytes of all objects but globals and functions
   std::size_t ceiling_ = 0;
-  std::size_t laid_ = 0;     // bytes of globals
+  std::size_t laid_ = 0;  // bytes of globals
   unsigned guards_ = 0;
   std::vector<Object> objects_;
   std::vector<std::uint32_t> free_;

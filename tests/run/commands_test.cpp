@@ -134,5 +134,21 @@ TEST(Commands, TheHigherStatusWins) {
   EXPECT_EQ(status(options, true, {Certainty::certain}), Status::clean);
 }
 
+TEST(Commands, ProbeTakesANameOrAll) {
+  const Command one = parse({"probe", "nav::mxm", "--in", "kit.c", "--format", "json", "--", "-Iinclude"});
+  ASSERT_TRUE(std::holds_alternative<Probe>(one));
+  EXPECT_EQ(std::get<Probe>(one).name, "nav::mxm");
+  EXPECT_EQ(std::get<Probe>(one).request.paths, (std::vector<std::string>{"kit.c"}));
+  EXPECT_EQ(std::get<Probe>(one).request.flags, (std::vector<std::string>{"-Iinclude"}));
+  EXPECT_EQ(std::get<Probe>(one).format, Format::json);
+  const Command all = parse({"probe", "--all", "--in", "a.c", "--in", "b.c"});
+  ASSERT_TRUE(std::holds_alternative<Probe>(all));
+  EXPECT_TRUE(std::get<Probe>(all).all);
+  EXPECT_EQ(std::get<Probe>(all).request.paths, (std::vector<std::string>{"a.c", "b.c"}));
+  EXPECT_EQ(answered({"probe"}).status, Status::wrong_call);
+  EXPECT_EQ(answered({"probe", "mxm", "--all"}).status, Status::wrong_call);
+  EXPECT_EQ(answered({"probe", "mxm", "--format", "sarif"}).status, Status::wrong_call);
+}
+
 }  // namespace
 }  // namespace dextral::run

@@ -84,6 +84,7 @@ struct Operation {
   Span span;
   std::string text;    // the expression, shortened
   std::string target;  // of copies: what it is assigned or passed to
+  std::vector<std::uint32_t> arms;  // branches that it stands in: twice the number of the branch, plus the arm
   std::vector<Twin> twins;
   Span callee;         // the name of the function that a twin would replace
 };
@@ -92,6 +93,9 @@ struct Operation {
 inline bool keeps_kind(OperationKind kind) {
   return kind == OperationKind::copy || kind == OperationKind::sum || kind == OperationKind::difference || kind == OperationKind::cross;
 }
+
+// Can only one of the two be on a path?
+bool exclude_each_other(const Operation&, const Operation&);
 
 // A phrase that a value must meet.
 struct Hold {

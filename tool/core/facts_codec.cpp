@@ -92,8 +92,8 @@ void fields(Archive& archive, Is<Twin> auto& x) {
 
 template <class Archive>
 void fields(Archive& archive, Is<Operation> auto& x) {
-  auto& [kind, result, operands, numbers, item, how, span, text, target, twins, callee] = x;
-  archive(kind, result, operands, numbers, item, how, span, text, target, twins, callee);
+  auto& [kind, result, operands, numbers, item, how, span, text, target, arms, twins, callee] = x;
+  archive(kind, result, operands, numbers, item, how, span, text, target, arms, twins, callee);
 }
 
 template <class Archive>

@@ -156,6 +156,12 @@ class Bodies {
 
 }  // namespace
 
+bool exclude_each_other(const Operation& a, const Operation& b) {
+  return std::any_of(a.arms.begin(), a.arms.end(), [&](std::uint32_t arm) {
+    return std::find(b.arms.begin(), b.arms.end(), arm ^ 1u) != b.arms.end();
+  });
+}
+
 Facts join(std::vector<Facts> units) {
   std::sort(units.begin(), units.end(), [](const Facts& a, const Facts& b) { return a.unit < b.unit; });
   Facts program;

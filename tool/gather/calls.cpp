@@ -75,7 +75,12 @@ Result Walker::call(const CallExpr* expr) {
   }
   if (first == 1) {
     Argument& object = invocation.arguments[0];
+    // `F.linear() = R` names a part of F and reads nothing of it.
+    std::set<std::string> named;
+    const bool plain = assignment && cast<CXXOperatorCallExpr>(expr)->getOperator() == OO_Equal;
+    std::set<std::string>* kept = std::exchange(reads_, plain ? &named : reads_);
     object.result = evaluate(object.expr);
+    reads_ = kept;
     object.writable = !method->isConst();
   }
   Result result = invoke(invocation);

@@ -57,7 +57,8 @@ std::vector<BarComment> bar_comments(FileID file, const SourceManager& manager, 
       continue;
     }
     llvm::StringRef text = buffer->substr(offset, token.getLength());
-    if (!text.starts_with("//|") && !text.starts_with("/*|")) continue;
+    const bool bar = text.starts_with("//|") || text.starts_with("/*|");
+    if (!bar || text.substr(3).starts_with("|")) continue;  // `/*|| b < 1*/` is code set aside
     BarComment comment;
     comment.text = behind_bar(text);
     comment.offset = offset;
@@ -70,8 +71,9 @@ std::vector<BarComment> bar_comments(FileID file, const SourceManager& manager, 
     llvm::StringRef after = buffer->substr(comment.end).split('\n').first;
     // Behind a whole declaration `/*| */` speaks of all its names, as `//|` does.
     const bool behind = before.trim().empty() || before.trim().ends_with(";");
-    comment.is_inline = text.starts_with("/*|") && !(behind && after.trim().empty());
-    comment.alone = before.trim().empty() && (text.starts_with("//|") || after.trim().empty());
+    const bool last = after.trim().empty() || after.trim().starts_with("//") || after.trim().starts_with("/*");
+    comment.is_inline = text.starts_with("/*|") && !(behind && last);
+    comment.alone = before.trim().empty() && (text.starts_with("//|") || last);
     unsigned column = manager.getColumnNumber(file, offset);
     if (!list.empty() && continues(list.back(), comment, columns.back(), column)) {
       list.back().text += "\n" + comment.text;

@@ -78,6 +78,15 @@ std::optional<Result> Walker::modelled(Invocation& invocation) {
   return std::nullopt;
 }
 
+// `P * AngleAxisd(t, axis) * C`: a rotation of unknown making is a factor all the same.
+ValueId Walker::unknown_factor(const Argument& argument) {
+  const Value like = unit_.types.value(unit_.types.bare(argument.expr->getType()), brief(argument.expr->getSourceRange()),
+                                       span(argument.expr->getSourceRange()));
+  const bool factor = like.shape == Shape::rotation || like.shape == Shape::quaternion || like.shape == Shape::pose;
+  if (!factor || argument.result.object) return ValueId::none;
+  return recorder_.value(like.shape, like.rotation, like.text, like.span, like.inverse_form);
+}
+
 // How many vectors `double pv[2][3]` holds; 0 where it is a matrix or no array of vectors.
 std::size_t Walker::vectors_in(const Argument& argument) {
   if (!argument.result.place || argument.result.place->offset != -1) return 0;
@@ -151,6 +160,7 @@ Result Walker::apply(const project::FunctionModel& model, Invocation& invocation
     Argument* argument = this->argument(invocation, number);
     if (!argument) continue;
     Operand operand = this->operand(argument->result, argument->expr);
+    if (operand.value == ValueId::none) operand.value = unknown_factor(*argument);
     if (operand.value == ValueId::none) {
       // A part that is not understood: the whole is not.
       if (model.into != project::kReturn) store(invocation, model, ValueId::none, false);

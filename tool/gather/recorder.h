@@ -12,6 +12,7 @@ namespace dextral::gather {
 class Recorder {
  public:
   Function function;
+  std::vector<std::uint32_t> arms;  // of the branches around
 
   ValueId value(Shape shape, bool rotation, std::string text, Span span, std::string inverse_form = {}) {
     function.values.push_back({shape, rotation, std::move(text), std::move(inverse_form), span});
@@ -26,6 +27,7 @@ class Recorder {
     op.operands = std::move(operands);
     op.span = span;
     op.text = std::move(text);
+    op.arms = arms;
     function.operations.push_back(std::move(op));
     carry_rotation(function.operations.back());
     return function.operations.back();

@@ -121,9 +121,14 @@ void Walker::branch(const IfStmt* statement) {
   Result condition = evaluate(statement->getCond());
   if (!frames_.empty()) ++frames_.back().branches;
   Environment before = now_;
+  const std::uint32_t arm = 2 * branches_++;
+  recorder_.arms.push_back(arm);
   this->statement(statement->getThen());
+  recorder_.arms.back() = arm + 1;
   Environment yes = std::exchange(now_, std::move(before));
   if (statement->getElse()) this->statement(statement->getElse());
+  // After a branch that leaves, the rest is its other arm.
+  if (!yes.dead || now_.dead) recorder_.arms.pop_back();
   join({std::move(yes), now_}, statement);
 }
 

@@ -211,6 +211,7 @@ class Walker {
   void enter_inlined(const clang::FunctionDecl*, Invocation&);
   Result called(Invocation&);
   bool stays_literal(OperationKind, Invocation&, const std::vector<int>& of);
+  ValueId unknown_factor(const Argument&);
   std::size_t vectors_in(const Argument&);
   bool applied_to_each(const project::FunctionModel&, Invocation&);
   Result apply(const project::FunctionModel&, Invocation&);
@@ -249,6 +250,7 @@ class Walker {
   std::vector<Inlining> frames_;
   std::set<std::string>* reads_ = nullptr;  // paths read while an assignment is evaluated
   std::vector<std::vector<Environment>> breaks_;  // of the loops around
+  std::uint32_t branches_ = 0;                    // met so far
   std::vector<Operand> returns_;
   std::vector<Snapshot> returned_objects_;
   struct Stream {               // an open comma initialiser

@@ -1,13 +1,17 @@
 #include "run/answers.h"
 
 #include <algorithm>
+#include <cstdlib>
 #include <filesystem>
 #include <iostream>
 
 #include "gather/gather.h"
+#include "probe/probe.h"
 #include "rules/rule.h"
+#include "run/deliver.h"
 #include "run/pages.h"
 #include "run/unread.h"
+#include "tell/measured.h"
 
 namespace dextral::run {
 
@@ -69,6 +73,72 @@ Status answer(const ShowFacts& asked) {
   };
   std::sort(functions.begin(), functions.end(), by_place);
   for (const Function* function : functions) std::cout << print(*function, facts.files) << "\n";
+  return not_read.empty() ? Status::clean : Status::not_read;
+}
+
+namespace {
+
+// A folder of this run, gone at its end.
+class RunFolder {
+ public:
+  RunFolder() {
+    std::error_code error;
+    std::string name = (std::filesystem::temp_directory_path(error) / "dextral-XXXXXX").string();
+    if (!error && mkdtemp(name.data())) path_ = name;
+  }
+  ~RunFolder() {
+    std::error_code error;
+    if (!path_.empty()) std::filesystem::remove_all(path_, error);
+  }
+  RunFolder(const RunFolder&) = delete;
+  RunFolder& operator=(const RunFolder&) = delete;
+  const std::string& path() const { return path_; }
+
+ private:
+  std::string path_;
+};
+
+ReadUnit prober(const project::Project& project, const std::string& name, const probe::Elsewhere& elsewhere) {
+  return [&project, name, &elsewhere](const project::Unit& unit) {
+    Facts facts;
+    facts.unit = unit.file;
+    probe::Report report = probe::measure(unit, project, {name, {}}, elsewhere, facts.files);
+    facts.measurements = std::move(report.measurements);
+    facts.not_read_because = std::move(report.refusal);
+    facts.read = facts.not_read_because.empty();
+    return facts;
+  };
+}
+
+// Who defines what can only be asked where there are several units.
+probe::Elsewhere elsewhere_in(const project::Project& project, const Limits& limits, const std::string& folder) {
+  if (project.units.size() < 2) return {};
+  probe::Elsewhere elsewhere = probe::elsewhere(read_all(project.units, reader(project), limits));
+  elsewhere.folder = folder;
+  return elsewhere;
+}
+
+}  // namespace
+
+Status answer(const Probe& asked) {
+  const project::Project project = project::read(asked.request);
+  if (!tell_project(project)) return Status::wrong_call;
+  const RunFolder folder;
+  const probe::Elsewhere elsewhere = elsewhere_in(project, asked.limits, folder.path());
+  std::vector<Facts> units = read_all(project.units, prober(project, asked.name, elsewhere), asked.limits);
+  const std::vector<Unread> not_read = unread(units);
+  tell_unread(not_read);
+  Facts facts = join(std::move(units));
+  tell::sort(facts.measurements, facts.files);
+  const bool json = asked.format == Format::json;
+  const tell::Style style{json ? told_root(project) : std::filesystem::current_path().string()};
+  std::cout << (json        ? tell::json(facts.measurements, facts.files, style)
+                : asked.all ? tell::table(facts.measurements, facts.files, style)
+                            : tell::text(facts.measurements, facts.files, style));
+  if (facts.measurements.empty() && !asked.all) {
+    std::cerr << "dextral: no function `" << asked.name << "` with a body is in the scope\n";
+    return Status::wrong_call;
+  }
   return not_read.empty() ? Status::clean : Status::not_read;
 }
 

@@ -1,4 +1,4 @@
-// The commands that answer without judging: `rules` and `facts`; and what is
+// The commands that answer without judging: `rules`, `facts` and `probe`; and what is
 // told of a project before it is read.
 #pragma once
 
@@ -16,6 +16,7 @@ std::string program_path();
 Status answer(const Answered&);
 Status answer(const ShowRules&);
 Status answer(const ShowFacts&);
+Status answer(const Probe&);
 
 // Problems and notes to standard error; false where there is a problem.
 bool tell_project(const project::Project&);

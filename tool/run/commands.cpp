@@ -28,6 +28,7 @@ const std::map<std::string, std::optional<Certainty>> kThresholds{{"certain", Ce
                                                                   {"suspect", Certainty::suspect},
                                                                   {"never", std::nullopt}};
 const std::map<std::string, Format> kFormats{{"text", Format::text}, {"sarif", Format::sarif}, {"json", Format::json}};
+const std::map<std::string, Format> kPlainFormats{{"text", Format::text}, {"json", Format::json}};
 const std::map<std::string, Color> kColors{
     {"auto", Color::automatic}, {"always", Color::always}, {"never", Color::never}};
 
@@ -82,6 +83,16 @@ void add_report(CLI::App& app, Lint& lint) {
   app.add_flag("--dry-run", lint.dry_run, "Show the repairs as a unified diff; write nothing");
 }
 
+void add_probe(CLI::App& app, Probe& probe) {
+  app.add_option("NAME", probe.name, "The function, with or without its scope")->type_name("");
+  app.add_flag("--all", probe.all, "All functions that take and give a few numbers, one line each");
+  app.add_option("--in", probe.request.paths, "The file that has it, and files with what it calls; else all of compile_commands.json")
+      ->type_name("FILE");
+  add_choice(app, "--format", probe.format, kPlainFormats, "text (default) or json");
+  add_project(app, probe.request);
+  add_limits(app, probe.limits);
+}
+
 Answered wrong_call(const std::string& message) {
   return {Status::wrong_call, "", "dextral: " + message + "\n`dextral --help` lists what can be said.\n"};
 }
@@ -96,11 +107,11 @@ std::vector<std::string> take_flags(std::vector<std::string>& arguments) {
 }
 
 std::optional<std::string> no_command(const std::vector<std::string>& arguments) {
-  const std::vector<std::string> commands{"lint", "rules", "facts"};
-  if (arguments.empty()) return "say what to do: lint, rules or facts";
+  const std::vector<std::string> commands{"lint", "rules", "facts", "probe"};
+  if (arguments.empty()) return "say what to do: lint, probe, rules or facts";
   const std::string& word = arguments.front();
   if (word.starts_with("-") || std::find(commands.begin(), commands.end(), word) != commands.end()) return std::nullopt;
-  return "`" + word + "` is no command; lint, rules and facts are";
+  return "`" + word + "` is no command; lint, probe, rules and facts are";
 }
 
 }  // namespace
@@ -110,7 +121,8 @@ Command parse(const std::vector<std::string>& given) {
   Lint lint;
   ShowRules rules;
   ShowFacts facts;
-  lint.request.flags = facts.request.flags = take_flags(arguments);
+  Probe probe;
+  lint.request.flags = facts.request.flags = probe.request.flags = take_flags(arguments);
 
   CLI::App app(kAbout, "dextral");
   app.set_version_flag("--version", std::string("dextral ") + DEXTRAL_VERSION);
@@ -129,6 +141,8 @@ Command parse(const std::vector<std::string>& given) {
   facts_command->add_option("FILE", facts.request.paths, "The file")->required()->expected(1)->type_name("");
   add_project(*facts_command, facts.request);
   add_limits(*facts_command, facts.limits);
+  CLI::App* probe_command = app.add_subcommand("probe", "Run small maths functions and tell what they are; flags for Clang after --");
+  add_probe(*probe_command, probe);
 
   if (std::optional<std::string> wrong = no_command(arguments)) return wrong_call(*wrong);
   std::reverse(arguments.begin(), arguments.end());  // as CLI11 takes them
@@ -142,6 +156,10 @@ Command parse(const std::vector<std::string>& given) {
   if (lint.write_repairs && lint.dry_run) return wrong_call("--write-repairs and --dry-run exclude each other");
   if (*lint_command) return lint;
   if (*rules_command) return rules;
+  if (*probe_command) {
+    if (probe.all == !probe.name.empty()) return wrong_call("probe one function, `dextral probe NAME`, or `--all`");
+    return probe;
+  }
   return facts;
 }
 

@@ -52,6 +52,14 @@ struct ShowFacts {
   Limits limits;
 };
 
+struct Probe {
+  project::Request request;
+  Limits limits;
+  std::string name;  // of functions, with or without their scope
+  bool all = false;  // else: the functions of that name
+  Format format = Format::text;
+};
+
 // The call was answered already: help, version, a wrong option.
 struct Answered {
   Status status = Status::clean;
@@ -59,7 +67,7 @@ struct Answered {
   std::string error;
 };
 
-using Command = std::variant<Answered, Lint, ShowRules, ShowFacts>;
+using Command = std::variant<Answered, Lint, ShowRules, ShowFacts, Probe>;
 
 // Arguments without the program's name.
 Command parse(const std::vector<std::string>& arguments);

@@ -26,8 +26,9 @@ bool rotation_by_name(std::string name) {
 }
 
 // Where a proof uses a matrix twice that nothing says is a rotation, the matrix
-// may be a gain or a scale that belongs to no frame.
-Certainty through_matrices(const Function& function, const Sheeted& sheeted, const std::vector<Edge>& chain) {
+// may be a gain or a scale that belongs to no frame. An input that nobody
+// declares and that two branches use in two frames may have a flag beside it.
+Certainty through_inputs(const Function& function, const Sheeted& sheeted, const std::vector<Edge>& chain) {
   std::vector<bool> rotation = rotations(function);
   std::set<ValueId> made;
   for (const Operation& op : function.operations) made.insert(op.result);
@@ -42,6 +43,8 @@ Certainty through_matrices(const Function& function, const Sheeted& sheeted, con
     if (found == owner.end() || a.operation == b.operation) continue;
     const Value& value = function.values.at(std::size_t(found->second));
     auto is_hold = [&](const Edge& e) { return function.operations.at(e.operation).kind == OperationKind::hold; };
+    const bool apart = exclude_each_other(function.operations.at(a.operation), function.operations.at(b.operation));
+    if (apart && !made.contains(found->second) && !is_hold(a) && !is_hold(b)) return Certainty::suspect;
     if (value.shape != Shape::matrix || rotation[std::size_t(found->second)] || made.contains(found->second) ||
         is_hold(a) || is_hold(b))
       continue;
@@ -137,7 +140,7 @@ Clash clash_of(const Function& function, Sheeted& sheeted, const Conflict& confl
   std::reverse(chain.begin(), chain.end());
   chain.push_back({conflict.left, conflict.right, conflict.operation, conflict.certainty, conflict.via});
   chain.insert(chain.end(), right_chain.begin(), right_chain.end());
-  clash.certainty = weaker(clash.certainty, through_matrices(function, sheeted, chain));
+  clash.certainty = weaker(clash.certainty, through_inputs(function, sheeted, chain));
   if (conflict.via) {
     auto& side = conflict.left_operand == kResult ? clash.left_proof : clash.right_proof;
     side.insert(side.begin(), conflict.via->proof.begin(), conflict.via->proof.end());

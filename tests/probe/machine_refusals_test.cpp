@@ -131,6 +131,11 @@ TEST(MachineRefusals, Bounds) {
 }
 
 TEST(MachineRefusals, Types) {
+  EXPECT_EQ(why("define void @f(ptr %p) { %a = load [1024 x [1024 x [1024 x [1024 x {}]]]], ptr %p\n ret void }",
+                {std::uint64_t{0}}),
+            "no refusal");
+  EXPECT_EQ(why("define void @f(ptr %p) { %a = load [2000 x i8], ptr %p\n ret void }", {std::uint64_t{0}}),
+            "handles a value of more than 1024 parts");
   EXPECT_EQ(why("define void @f(double %a) { %b = fpext double %a to x86_fp80\n ret void }", {1.0}),
             "uses long double");
   EXPECT_EQ(why("define void @f(i64 %a) { %b = zext i64 %a to i128\n ret void }", {std::uint64_t{1}}),

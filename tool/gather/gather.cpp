@@ -67,13 +67,15 @@ void walk(UnitContext& unit) {
 Facts gather(const project::Unit& unit, const project::Project& project, const std::vector<std::string>& rule_ids) {
   Facts facts;
   facts.unit = unit.file;
-  facts.read = parse(unit, project, facts, [&](ASTContext& ast, Sema& sema) {
+  Inactive inactive;
+  const Visit visit = [&](ASTContext& ast, Sema& sema) {
     Source source(ast.getSourceManager(), ast.getLangOpts(), facts.files);
     Types types(ast, sema, project.models);
-    Phrases phrases(ast, source, project, rule_ids, facts);
+    Phrases phrases(ast, source, project, rule_ids, facts, inactive);
     UnitContext context{ast, &sema, source, types, phrases, project, facts, {}, {}};
     walk(context);
-  });
+  };
+  facts.read = parse(unit, project, facts, visit, {}, &inactive);
   return facts;
 }
 

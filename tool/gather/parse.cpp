@@ -93,12 +93,22 @@ class Consumer : public SemaConsumer {
   std::map<FileID, bool> scope_;
 };
 
+class LeftOut : public PPCallbacks {
+ public:
+  explicit LeftOut(Inactive& inactive) : inactive_(inactive) {}
+  void SourceRangeSkipped(SourceRange range, SourceLocation) override { inactive_.push_back(range); }
+
+ private:
+  Inactive& inactive_;
+};
+
 class Action : public ASTFrontendAction {
  public:
-  Action(const project::Project& project, const Visit& visit, Facts& facts, bool& done)
-      : project_(project), visit_(visit), facts_(facts), done_(done) {}
+  Action(const project::Project& project, const Visit& visit, Facts& facts, bool& done, Inactive* inactive)
+      : project_(project), visit_(visit), facts_(facts), done_(done), inactive_(inactive) {}
   TranslationUnitKind getTranslationUnitKind() override { return TU_Prefix; }
-  std::unique_ptr<ASTConsumer> CreateASTConsumer(CompilerInstance&, llvm::StringRef) override {
+  std::unique_ptr<ASTConsumer> CreateASTConsumer(CompilerInstance& compiler, llvm::StringRef) override {
+    if (inactive_) compiler.getPreprocessor().addPPCallbacks(std::make_unique<LeftOut>(*inactive_));
     return std::make_unique<Consumer>(project_, visit_, facts_, done_);
   }
 
@@ -107,6 +117,7 @@ class Action : public ASTFrontendAction {
   const Visit& visit_;
   Facts& facts_;
   bool& done_;
+  Inactive* inactive_;
 };
 
 std::vector<const char*> command(const std::vector<std::string>& words) {
@@ -117,7 +128,7 @@ std::vector<const char*> command(const std::vector<std::string>& words) {
 
 }  // namespace
 
-bool parse(const project::Unit& unit, const project::Project& project, Facts& facts, const Visit& visit, Bodies bodies) {
+bool parse(const project::Unit& unit, const project::Project& project, Facts& facts, const Visit& visit, Bodies bodies, Inactive* inactive) {
   std::vector<std::string> words{"clang", "-fsyntax-only", "-resource-dir", resource_folder(), "-Wno-everything", "-ferror-limit=0"};
   words.insert(words.end(), unit.arguments.begin(), unit.arguments.end());
   words.push_back("--");
@@ -151,7 +162,7 @@ bool parse(const project::Unit& unit, const project::Project& project, Facts& fa
   compiler.getDiagnostics().setSuppressAllDiagnostics(false);
   compiler.createFileManager(system);
   bool done = false;
-  Action action(project, visit, facts, done);
+  Action action(project, visit, facts, done, inactive);
   compiler.ExecuteAction(action);
   if (!done && facts.not_read_because.empty()) facts.not_read_because = "it could not be opened or its flags are wrong";
   return done;

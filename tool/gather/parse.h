@@ -5,6 +5,7 @@
 #pragma once
 
 #include <functional>
+#include <vector>
 
 #include "core/facts.h"
 #include "gather/clang.h"
@@ -16,8 +17,12 @@ using Visit = std::function<void(clang::ASTContext&, clang::Sema&)>;
 
 enum class Bodies { of_scope, all };
 
+// What `#if` leaves out.
+using Inactive = std::vector<clang::SourceRange>;
+
 // Calls `visit` once the unit is parsed. Errors go into the facts; false: the
 // unit could not be parsed at all.
-bool parse(const project::Unit&, const project::Project&, Facts&, const Visit& visit, Bodies = Bodies::of_scope);
+bool parse(const project::Unit&, const project::Project&, Facts&, const Visit& visit, Bodies = Bodies::of_scope,
+           Inactive* = nullptr);
 
 }  // namespace dextral::gather

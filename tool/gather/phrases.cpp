@@ -266,8 +266,9 @@ class Attacher {
   std::vector<Head> heads_;
 };
 
-Phrases::Phrases(ASTContext& context, const Source& source, const project::Project& project, const std::vector<std::string>& rules, Facts& facts)
-    : context_(context), source_(source), project_(project), rules_(rules), facts_(facts) {
+Phrases::Phrases(ASTContext& context, const Source& source, const project::Project& project, const std::vector<std::string>& rules, Facts& facts,
+                 const std::vector<SourceRange>& inactive)
+    : context_(context), source_(source), project_(project), rules_(rules), facts_(facts), inactive_(inactive) {
   for (const project::Contract& contract : project.file.contracts) contracts_[contract.entity] = &contract;
 }
 
@@ -301,8 +302,16 @@ void Phrases::attach() {
   for (FileID file : files) {
     if (!project_.file.in_scope(source_.file_of(manager.getLocForStartOfFile(file))) && file != manager.getMainFileID()) continue;
     Attacher attacher(*this, inventory, file);
-    for (const BarComment& comment : bar_comments(file, manager, context_.getLangOpts())) attacher.attach(comment);
+    for (const BarComment& comment : bar_comments(file, manager, context_.getLangOpts()))
+      if (!is_inactive(manager.getLocForStartOfFile(file).getLocWithOffset(int(comment.offset)))) attacher.attach(comment);
   }
+}
+
+bool Phrases::is_inactive(SourceLocation at) const {
+  const SourceManager& manager = context_.getSourceManager();
+  return std::any_of(inactive_.begin(), inactive_.end(), [&](SourceRange range) {
+    return manager.isBeforeInTranslationUnit(range.getBegin(), at) && manager.isBeforeInTranslationUnit(at, range.getEnd());
+  });
 }
 
 // A misspelt frame is told, and its phrase says nothing: one fault, one finding.

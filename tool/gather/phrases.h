@@ -36,7 +36,8 @@ struct Slot3 {
 
 class Phrases {
  public:
-  Phrases(clang::ASTContext&, const Source&, const project::Project&, const std::vector<std::string>& rules, Facts&);
+  Phrases(clang::ASTContext&, const Source&, const project::Project&, const std::vector<std::string>& rules, Facts&,
+          const std::vector<clang::SourceRange>& inactive);
 
   // Reads the comments of the scope's files and attaches them.
   void attach();
@@ -54,6 +55,7 @@ class Phrases {
   friend class Attacher;
   using Key = unsigned;  // raw location of the declared name
   std::vector<Said> at(clang::SourceLocation) const;
+  bool is_inactive(clang::SourceLocation) const;
   bool frames_known(const Quantity&, Span where) const;
 
   clang::ASTContext& context_;
@@ -61,6 +63,7 @@ class Phrases {
   const project::Project& project_;
   const std::vector<std::string>& rules_;
   Facts& facts_;
+  const std::vector<clang::SourceRange>& inactive_;  // left out by #if
   std::map<Key, std::vector<Said>> said_;
   std::map<Key, std::vector<Said>> returned_;
   std::map<Key, Slot3> components_;

@@ -50,15 +50,17 @@ class Machine {
   // Refuses where a byte is undefined.
   std::variant<std::vector<std::byte>, Refusal> read(Address, std::size_t bytes) const;
 
-  // What the run has done to an object, byte by byte.
+  // What the last call has done to an object, byte by byte; empty for what the
+  // caller did not allocate and is no global.
   struct Traffic {
     std::vector<bool> read;  // before it was written
     std::vector<bool> written;
   };
   Traffic traffic(Address object) const;
 
-  // Globals that were read while their value was not constant, by name, and
-  // where they lie: further inputs.
+  // Globals that the last call read while their value was not constant, by
+  // symbol, and where they lie: further inputs. One without a known value can
+  // be written, and the call made again.
   std::map<std::string, Address> globals_read() const;
 
   // One call, with the memory as it stands. The bounds count from here.

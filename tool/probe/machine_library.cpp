@@ -161,6 +161,11 @@ bool guard_release(Run& run, Arguments arguments, Slot&) {
   return run.memory().store(arguments[0].bits, one_byte, {1, 0});
 }
 
+bool guard_abort(Run& run, Arguments, Slot&) {
+  run.memory().leave_guard();
+  return true;
+}
+
 bool nothing(Run&, Arguments, Slot& result) {
   result = {0, 0};
   return true;
@@ -236,7 +241,7 @@ class Table {
   void start_up() {
     add("__cxa_guard_acquire", "i(p)", guard_acquire);
     add("__cxa_guard_release", "v(p)", guard_release);
-    add("__cxa_guard_abort", "v(p)", guard_release);
+    add("__cxa_guard_abort", "v(p)", guard_abort);
     add("__cxa_atexit", "i(ppp)", nothing);
     add("atexit", "i(p)", nothing);
   }

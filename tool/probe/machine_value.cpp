@@ -78,7 +78,11 @@ void Shapes::flatten(llvm::Type* type, std::uint64_t offset, Shape& shape, unsig
     shape.trouble = "handles a value of more than " + std::to_string(most_parts) + " parts";
     return;
   }
-  for (std::uint64_t i = 0; i < count; ++i) flatten(element, offset + i * stride, shape, depth + 1);
+  for (std::uint64_t i = 0; i < count; ++i) {
+    const std::size_t before = shape.parts.size();
+    flatten(element, offset + i * stride, shape, depth + 1);
+    if (shape.parts.size() == before) return;
+  }
 }
 
 void Shapes::flatten_scalar(llvm::Type* type, std::uint64_t offset, Shape& shape) {

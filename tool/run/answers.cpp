@@ -120,6 +120,14 @@ probe::Elsewhere elsewhere_in(const project::Project& project, const Limits& lim
 
 }  // namespace
 
+void add_measurements(std::vector<Facts>& units, const project::Project& project, const Limits& limits) {
+  const RunFolder folder;
+  probe::Elsewhere elsewhere = project.units.size() < 2 ? probe::Elsewhere{} : probe::elsewhere(units);
+  elsewhere.folder = folder.path();
+  for (Facts& measured : read_all(project.units, prober(project, "", elsewhere), limits))
+    if (measured.read) units.push_back(std::move(measured));
+}
+
 Status answer(const Probe& asked) {
   const project::Project project = project::read(asked.request);
   if (!tell_project(project)) return Status::wrong_call;

@@ -27,4 +27,7 @@ std::string text(const project::Problem&);
 // How a unit is read.
 ReadUnit reader(const project::Project&);
 
+// Adds what the small functions of the units measure as, found by running them.
+void add_measurements(std::vector<Facts>& units, const project::Project&, const Limits&);
+
 }  // namespace dextral::run

@@ -77,6 +77,7 @@ void add_report(CLI::App& app, Lint& lint) {
   add_choice(app, "--show", lint.show, kCertainties, "Tell from this certainty on: certain, likely, suspect (default)");
   add_choice(app, "--color", lint.color, kColors, "auto (default), always, never");
   app.add_flag("--allow-unread", lint.allow_unread, "What could not be read does not change the exit status");
+  app.add_flag("--probe", lint.probe, "Run small functions of the sources in a bounded evaluator, and use what they measure as");
   app.add_option("--known", lint.known, "Findings listed in FILE are known and not told")->type_name("FILE");
   app.add_option("--update-known", lint.update_known, "List the findings of this run in FILE")->type_name("FILE");
   app.add_flag("--write-repairs", lint.write_repairs, "Write the repairs of certain findings into the sources");

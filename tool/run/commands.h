@@ -40,6 +40,7 @@ struct Lint {
   bool write_repairs = false;
   bool dry_run = false;
   bool allow_unread = false;
+  bool probe = false;  // run home-grown functions to find what they do
   Color color = Color::automatic;
 };
 

@@ -48,7 +48,8 @@ std::optional<Function> as_contract(const Function& measured, const std::vector<
     if (m->meanings.size() != 1 || (meaning && m->meanings[0].id != meaning->id)) return std::nullopt;
     if (!meaning) meaning = &m->meanings[0];
   }
-  const bool selects = measurements.size() > 1;
+  // What holds for one value of a selector says nothing of the others.
+  const bool selects = measurements.size() > 1 || !measurements[0]->selected.empty();
   if (!meaning || meaning->contract.empty() || selects) return std::nullopt;
   Function contract;
   contract.key = measured.key;
